@@ -1,0 +1,72 @@
+"""Well temperatures to maps of geothermal gradient, heat flow and temperature at depth.
+
+The config is checked here, whole and before any job; README.md and config/README.md explain it.
+"""
+
+import sys
+from pathlib import Path
+
+ROOT = Path(workflow.basedir)
+sys.path.insert(0, str(ROOT / "scripts"))
+
+from basinheat.provenance import code_digest, code_digests
+from basinheat.settings.files import (
+    input_files,
+    input_tables,
+    nearby,
+    polygons,
+    with_paths,
+)
+from basinheat.settings.load import load_or_exit
+
+# The demo is the default, and only without a config of the user's: `configfile:` merges.
+if not workflow.configfiles:
+
+    configfile: str(ROOT / "config" / "config.yaml")
+
+
+LIBRARY = nearby(ROOT / "scripts" / "basinheat")
+FOLDER = nearby(Path(workflow.configfiles[-1]).parent)
+SETTINGS = load_or_exit(
+    config,
+    nearby(workflow.configfiles[-1]),
+    FOLDER,
+    check_files=workflow.is_main_process,
+)
+# What rules take as params: plain values, so that Snakemake can compare them with the last run's.
+SECTIONS = {name: with_paths(settings, FOLDER) for name, settings in SETTINGS.items()}
+BASE = SETTINGS["base"]
+
+
+wildcard_constraints:
+    run=BASE.run,
+    scenario="|".join(SETTINGS),
+
+
+include: "workflow/rules/wells.smk"
+include: "workflow/rules/heat.smk"
+include: "workflow/rules/maps.smk"
+include: "workflow/rules/delivery.smk"
+
+
+rule all:
+    default_target: True
+    input:
+        expand(
+            "results/{run}/{scenario}/delivery/manifest.json",
+            run=BASE.run,
+            scenario=SETTINGS,
+        ),
+
+
+rule first_look:
+    input:
+        expand(
+            "results/{run}/{scenario}/delivery/rasters",
+            run=BASE.run,
+            scenario=SETTINGS,
+        ),
+
+
+onsuccess:
+    print(f"Done: {nearby(Path.cwd() / 'results' / BASE.run)}")

@@ -1,0 +1,1 @@
+"""Thermal conductivity: a sourced catalogue, mixing, porosity, in-situ conditions."""

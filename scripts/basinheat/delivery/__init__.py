@@ -1,0 +1,1 @@
+"""The folder to hand over: rasters, GeoPackage, cautions and manifest."""

@@ -1,0 +1,1 @@
+"""Geostatistics: covariance models, variograms, likelihood, kriging engines, cross-validation."""

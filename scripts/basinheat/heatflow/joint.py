@@ -1,0 +1,286 @@
+"""One fit of the covariance of heat flow, the variance scales and all shared sources."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+
+import numpy as np
+from scipy.linalg import solve_triangular
+from scipy.optimize import minimize
+from scipy.spatial.distance import cdist
+
+from basinheat.geostat.engine_global import GlobalKriging
+from basinheat.geostat.models import Covariance, correlation
+from basinheat.geostat.thinning import spread
+from basinheat.heatflow.reduction import (
+    Column,
+    Floats,
+    Ints,
+    Reduced,
+    amplitudes_within_wells,
+    reduce_wells,
+)
+
+WELLS_FITTED = 500  # likelihood costs n^3; more wells hardly move range and sill
+WELLS_PER_SCALE = 12  # fewer wells say nothing of a variance scale
+SCALE_PRIOR_LN = 0.5
+TURNS = 3
+
+
+@dataclass(frozen=True)
+class Basin:
+    """All temperatures of a basin, sorted by well.
+
+    Rows: ``well`` (n,), ``temperature`` (n,) degC, ``surface`` (n,) degC, ``resistance`` (n, k)
+    m2 K/mW and ``radiogenic`` (n, k) K by lithology, ``resistance_fixed`` (n,) and
+    ``radiogenic_fixed`` (n,) of measured rock, ``loadings`` (n, m) K of the temperature sources,
+    ``std`` (n,) K independent, ``well_std`` (n,) K, ``surface_std`` (n,) K own part of the surface
+    temperature, ``resistance_std`` (n,) m2 K/mW, ``scale_class`` (n,) int. Wells: ``xy`` (w, 2) m.
+    ``ln_std`` (k,) sigma of ln k of each lithology; ``surface_shift`` (m,) K: change of the surface
+    temperature per unit amplitude of each temperature source.
+    """
+
+    well: Ints
+    temperature: Floats
+    surface: Floats
+    resistance: Floats
+    radiogenic: Floats
+    resistance_fixed: Floats
+    radiogenic_fixed: Floats
+    loadings: Floats
+    std: Floats
+    well_std: Floats
+    surface_std: Floats
+    resistance_std: Floats
+    scale_class: Ints
+    xy: Floats
+    ln_std: Floats
+    surface_shift: Floats
+
+    def of_wells(self, wells: Ints) -> Basin:
+        """Return the rows of some wells, renumbered."""
+        number = np.full(len(self.xy), -1)
+        number[wells] = np.arange(len(wells))
+        rows = number[self.well] >= 0
+        per_row = {
+            name: getattr(self, name)[rows]
+            for name in self.__dataclass_fields__
+            if name not in ("xy", "ln_std", "surface_shift")
+        }
+        per_row["well"] = number[per_row["well"]]
+        return replace(self, xy=self.xy[wells], **per_row)
+
+
+@dataclass(frozen=True)
+class Joint:
+    """The fitted state: covariance, variance scales, amplitudes, and the reduced wells."""
+
+    covariance: Covariance
+    scales: Floats
+    reduced: Reduced
+    mean_within: Floats
+    covariance_within: Floats
+    offset: Floats  # amplitudes the columns were linearised at; added to what the engine gives
+    mean: Floats
+    posterior: Floats
+    regional: float
+
+
+def column_of(basin: Basin, ln_k: Floats, regional: float, scales: Floats) -> Column:
+    """Build the linear model of all rows for given ln k amplitudes and one regional heat flow.
+
+    Loadings use one regional heat flow (mW/m2) for all wells: with each well's own, ln k would
+    explain the map away and pull it low.
+    """
+    change = np.exp(-basin.ln_std * ln_k)
+    resistance, radiogenic = basin.resistance * change, basin.radiogenic * change
+    conductivity = -(regional * resistance - radiogenic) * basin.ln_std
+    scale = scales[basin.scale_class]
+    return Column(
+        well=basin.well,
+        resistance=resistance.sum(1) + basin.resistance_fixed,
+        excess=basin.temperature - basin.surface + radiogenic.sum(1) + basin.radiogenic_fixed,
+        loadings=np.column_stack([basin.loadings + basin.surface_shift, conductivity]),
+        variance=basin.std**2 * scale,
+        common=np.column_stack(
+            [
+                basin.well_std * np.sqrt(scale),
+                basin.surface_std,
+                regional * basin.resistance_std,
+            ]
+        ),
+    )
+
+
+def fit_joint(
+    basin: Basin,
+    regional: float,
+    models: tuple[str, ...],
+    pinned: Covariance | None = None,
+    trend: str = "none",
+) -> Joint:
+    """Fit covariance, scales and amplitudes by restricted maximum likelihood.
+
+    Parameters
+    ----------
+    basin : Basin
+        All temperatures.
+    regional : float, mW/m2
+        First guess of the regional heat flow.
+    models : tuple of str
+        Covariance models to choose from by likelihood.
+    pinned : Covariance, optional
+        A reviewed covariance; then only the scales are fitted.
+    trend : {"none", "linear"}
+        Drift of heat flow in x and y.
+
+    Returns
+    -------
+    Joint
+        Posterior of the amplitudes given everything; ln k linearised anew in each turn.
+    """
+    n_temperature, n_ln = basin.loadings.shape[1], len(basin.ln_std)
+    sample = basin.of_wells(spread(basin.xy, WELLS_FITTED))
+    search = _Search(sample, models, pinned, regional, trend)
+    ln_k = np.zeros(n_ln)
+    for turn in range(TURNS):
+        prior_mean = np.concatenate([np.zeros(n_temperature), -ln_k])
+        if turn < TURNS - 1:
+            search.run(ln_k, regional, prior_mean)
+        covariance, scales = search.covariance(), search.scales()
+        reduced = reduce_wells(column_of(basin, ln_k, regional, scales))
+        mean_within, covariance_within, _ = amplitudes_within_wells(reduced, prior_mean)
+        engine = GlobalKriging(
+            basin.xy,
+            covariance,
+            reduced.variance,
+            trend=trend,
+            loadings=reduced.loadings,
+            prior_mean=mean_within,
+            prior_covariance=covariance_within,
+        ).solve(reduced.heat_flow)
+        mean, posterior = engine.amplitudes()
+        offset = np.concatenate([np.zeros(n_temperature), ln_k])
+        regional = float(np.mean(reduced.heat_flow - reduced.loadings @ mean))
+        ln_k = ln_k + mean[n_temperature:]
+    return Joint(
+        covariance=covariance,
+        scales=scales,
+        reduced=reduced,
+        mean_within=mean_within,
+        covariance_within=covariance_within,
+        offset=offset,
+        mean=offset + mean,
+        posterior=posterior,
+        regional=regional,
+    )
+
+
+class _Search:
+    """Downhill search of ln sill, ln range, ln nugget and the ln variance scales."""
+
+    def __init__(
+        self,
+        basin: Basin,
+        models: tuple[str, ...],
+        pinned: Covariance | None,
+        regional: float,
+        trend: str,
+    ) -> None:
+        self.basin, self.models, self.pinned = basin, models, pinned
+        centred = basin.xy - basin.xy.mean(0)
+        ones = np.ones((len(centred), 1))
+        self.drift = np.hstack([ones, centred / centred.std()]) if trend == "linear" else ones
+        self.distance = cdist(basin.xy, basin.xy)
+        diagonal = max(float(np.hypot(*np.ptp(basin.xy, axis=0))), 1.0)
+        wells = [
+            len(np.unique(basin.well[basin.scale_class == c]))
+            for c in range(int(basin.scale_class.max()) + 1)
+        ]
+        self.n_classes = len(wells)
+        self.free = np.flatnonzero(np.array(wells) >= WELLS_PER_SCALE)
+        size = (0.1 * regional) ** 2
+        self.at = np.concatenate(
+            [[np.log(size), np.log(0.35 * diagonal), np.log(0.05 * size)], np.zeros(len(self.free))]
+        )
+        self.step = np.concatenate([[0.5, 0.5, 1.0], np.full(len(self.free), 0.3)])
+        near = np.sort(self.distance + np.where(self.distance > 0, 0, np.inf), axis=1)[:, :1]
+        shortest = float(np.median(near[np.isfinite(near)])) if np.isfinite(near).any() else 1.0
+        self.low = np.concatenate(
+            [
+                [np.log(1e-3 * size), np.log(shortest), np.log(1e-6 * size)],
+                np.full(len(self.free), -1.5),
+            ]
+        )
+        self.high = np.concatenate(
+            [
+                [np.log(100 * size), np.log(max(1.5 * diagonal, 2 * shortest)), np.log(10 * size)],
+                np.full(len(self.free), 1.5),
+            ]
+        )
+        self.range_guess = self.at[1]
+        self.model = models[-1]
+
+    def run(self, ln_k: Floats, regional: float, prior_mean: Floats) -> None:
+        """Search all models from where the last turn ended and keep the likeliest."""
+        if self.pinned is not None and not len(self.free):
+            return
+        results = []
+        for model in self.models:
+            result = minimize(
+                self._deviance,
+                self.at,
+                args=(model, ln_k, regional, prior_mean),
+                method="Nelder-Mead",
+                # the default simplex hardly moves a parameter that starts at 0
+                options={
+                    "initial_simplex": np.vstack([self.at, self.at + np.diag(self.step)]),
+                    "maxfev": 50 * len(self.at),
+                    "xatol": 0.02,
+                    "fatol": 0.02,
+                },
+            )
+            results.append((result.fun, model, np.clip(result.x, self.low, self.high)))
+        _, self.model, self.at = min(results, key=lambda r: r[0])
+        # later turns only polish
+        self.models, self.step = (self.model,), 0.4 * self.step
+
+    def covariance(self) -> Covariance:
+        """Return the covariance at the best point."""
+        if self.pinned is not None:
+            return self.pinned
+        sill, reach, nugget = np.exp(self.at[:3])
+        return Covariance(self.model, float(sill), float(reach), float(nugget))
+
+    def scales(self, at: Floats | None = None) -> Floats:
+        """Return the variance scale of every class."""
+        scales = np.ones(self.n_classes)
+        scales[self.free] = np.exp((self.at if at is None else at)[3:])
+        return scales
+
+    def _deviance(
+        self, at: Floats, model: str, ln_k: Floats, regional: float, prior_mean: Floats
+    ) -> float:
+        at = np.clip(at, self.low, self.high)
+        reduced = reduce_wells(column_of(self.basin, ln_k, regional, self.scales(at)))
+        mean, spread_, within = amplitudes_within_wells(reduced, prior_mean)
+        if self.pinned is None:
+            sill, reach, nugget = np.exp(at[:3])
+        else:
+            model, sill = self.pinned.model, self.pinned.sill
+            reach, nugget = self.pinned.range_m, self.pinned.nugget
+        matrix = sill * correlation(self.distance / reach, model)
+        matrix += reduced.loadings @ spread_ @ reduced.loadings.T
+        matrix.flat[:: len(matrix) + 1] += reduced.variance + nugget
+        try:
+            lower = np.linalg.cholesky(matrix)
+        except np.linalg.LinAlgError:
+            return np.inf
+        y = reduced.heat_flow - reduced.loadings @ mean
+        white = solve_triangular(lower, np.column_stack([self.drift, y]), lower=True)
+        basis, triangle = np.linalg.qr(white[:, :-1])
+        rest = white[:, -1] - basis @ (basis.T @ white[:, -1])
+        determinants = np.log(np.diag(lower)).sum() + np.log(np.abs(np.diag(triangle))).sum()
+        # a scale of 1 and a range of a third of the basin are expected, weakly
+        penalty = ((at[3:] / SCALE_PRIOR_LN) ** 2).sum() + ((at[1] - self.range_guess) / 1.5) ** 2
+        return float(within + 2 * determinants + rest @ rest + penalty)

@@ -1,0 +1,290 @@
+"""From estimates and resistances to sources, temperatures and heat flow."""
+
+from __future__ import annotations
+
+import logging
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+import pandas as pd
+
+from basinheat.errors import UserError
+from basinheat.geostat.models import Covariance
+from basinheat.geostat.variogram import experimental
+from basinheat.heatflow.joint import Basin, Joint, fit_joint
+from basinheat.tables import Temperatures
+
+log = logging.getLogger(__name__)
+
+SURFACE = "surface_temperature"
+FEWEST_WELLS = 5
+
+
+@dataclass(frozen=True)
+class Fit:
+    """What the joint fit hands on: tables by name, and the covariance as a plain dict."""
+
+    sources: pd.DataFrame
+    source_covariance: pd.DataFrame
+    source_information: pd.DataFrame
+    temperatures: pd.DataFrame
+    heat_flow: pd.DataFrame
+    map_points: pd.DataFrame
+    variogram: dict[str, Any]
+
+
+def fit(
+    estimates: pd.DataFrame,
+    resistances: pd.DataFrame,
+    sources: pd.DataFrame,
+    wells: pd.DataFrame,
+    models: tuple[str, ...],
+    surface_shared_std_k: float,
+    regional_mw_m2: float | None = None,
+    pinned: dict[str, Any] | None = None,
+    holdout: tuple[str, ...] = (),
+    trend: str = "none",
+) -> Fit:
+    """Fit the covariance of heat flow and all shared sources; give what follows from it.
+
+    Parameters
+    ----------
+    estimates, resistances : DataFrame
+        The tables of these names, row by row the same temperatures.
+    sources : DataFrame
+        Sources of the correction and of the conductivities: source, prior_std, unit.
+    wells : DataFrame
+        Wells with surface temperatures.
+    models : tuple of str
+        Covariance models to choose from.
+    surface_shared_std_k : float
+        Part of the surface temperature's sigma common to the basin.
+    regional_mw_m2 : float, optional
+        First guess of the regional heat flow; default the median of single temperatures.
+    pinned : dict, optional
+        A reviewed covariance.
+    holdout : tuple of str
+        Wells that must not inform the fit.
+    trend : {"none", "linear"}
+        Drift of heat flow in x and y.
+
+    Raises
+    ------
+    UserError
+        When fewer than five wells have a temperature.
+    """
+    kept = ~estimates["well"].isin(holdout)
+    wells = wells[wells["well"].isin(estimates["well"][kept])].sort_values("well")
+    wells = wells.reset_index(drop=True)
+    if len(wells) < FEWEST_WELLS:
+        raise UserError(
+            f"only {len(wells)} wells have a usable temperature, a map needs {FEWEST_WELLS}: see "
+            "rejected.csv for what was refused and why"
+        )
+    sources = _with_surface(sources, surface_shared_std_k)
+    order = np.argsort(estimates["well"].to_numpy()[kept], kind="stable")
+    used = estimates[kept].iloc[order].reset_index(drop=True)
+    rock = resistances[kept].iloc[order].reset_index(drop=True)
+    basin, classes = _basin(used, rock, sources, wells)
+    if regional_mw_m2 is None:
+        excess = basin.temperature - basin.surface + basin.radiogenic.sum(1)
+        total = basin.resistance.sum(1) + basin.resistance_fixed
+        regional_mw_m2 = float(np.median((excess + basin.radiogenic_fixed) / total))
+    joint = fit_joint(
+        basin,
+        regional_mw_m2,
+        models,
+        Covariance.from_dict(pinned["covariance"]) if pinned else None,
+        trend,
+    )
+    log.info(
+        "%d wells, %d temperatures: regional heat flow %.1f mW/m2, %s",
+        len(wells),
+        len(used),
+        joint.regional,
+        joint.covariance,
+    )
+    return Fit(
+        sources=_sources(joint, sources, used),
+        source_covariance=_matrix(sources, joint.mean, joint.posterior),
+        source_information=_matrix(sources, joint.mean_within, joint.covariance_within),
+        temperatures=_temperatures(joint, estimates, sources, classes),
+        heat_flow=_heat_flow(joint, used, rock, sources, wells),
+        map_points=_map_points(joint, sources, wells),
+        variogram=_variogram(joint, classes, basin.xy),
+    )
+
+
+def _with_surface(sources: pd.DataFrame, std_k: float) -> pd.DataFrame:
+    """Put temperature sources first, the surface among them, then ln k of the lithologies."""
+    sources = sources[sources["source"] != SURFACE]
+    rock = sources["source"].str.startswith("conductivity:")
+    surface = pd.DataFrame({"source": [SURFACE], "prior_std": [std_k], "unit": ["K"]})
+    return pd.concat(
+        [sources[~rock].sort_values("source"), surface, sources[rock].sort_values("source")],
+        ignore_index=True,
+    )
+
+
+def _is_rock(sources: pd.DataFrame) -> np.ndarray:
+    return sources["source"].str.startswith("conductivity:").to_numpy()
+
+
+def _loadings(estimates: pd.DataFrame, names: pd.Series) -> np.ndarray:
+    """Return the loadings on the named sources, 0 where a row carries none."""
+    columns = [f"loading_{name}" for name in names]
+    return estimates.reindex(columns=columns).fillna(0.0).to_numpy()
+
+
+def _basin(
+    used: pd.DataFrame, rock: pd.DataFrame, sources: pd.DataFrame, wells: pd.DataFrame
+) -> tuple[Basin, list[str]]:
+    """Arrange the tables as the arrays of the fit."""
+    well = pd.Index(wells["well"]).get_indexer(used["well"])
+    at = wells.iloc[well]
+    rocks = sources["source"][_is_rock(sources)].str.removeprefix("conductivity:").tolist()
+    resistance = rock[[f"resistance_{name}" for name in rocks]].to_numpy() * 1e-3
+    radiogenic = rock[[f"radiogenic_{name}" for name in rocks]].to_numpy()
+    temperature_sources = sources[~_is_rock(sources)]
+    classes, scale_class = np.unique(used["variance_class"].to_numpy(str), return_inverse=True)
+    return Basin(
+        well=well,
+        temperature=used["temperature_degc"].to_numpy(),
+        surface=at["surface_temperature_degc"].to_numpy(),
+        resistance=resistance,
+        radiogenic=radiogenic,
+        resistance_fixed=rock["resistance_m2k_w"].to_numpy() * 1e-3 - resistance.sum(1),
+        radiogenic_fixed=rock["radiogenic_k"].to_numpy() - radiogenic.sum(1),
+        loadings=_loadings(used, temperature_sources["source"]),
+        std=used["temperature_std_k"].to_numpy(),
+        well_std=used["well_std_k"].to_numpy(),
+        surface_std=at["surface_temperature_std_k"].to_numpy(),
+        resistance_std=rock["resistance_std_m2k_w"].to_numpy() * 1e-3,
+        scale_class=scale_class,
+        xy=wells[["easting_m", "northing_m"]].to_numpy(),
+        ln_std=sources["prior_std"].to_numpy()[_is_rock(sources)],
+        surface_shift=np.where(
+            temperature_sources["source"] == SURFACE, temperature_sources["prior_std"], 0.0
+        ),
+    ), classes.tolist()
+
+
+def _matrix(sources: pd.DataFrame, mean: np.ndarray, covariance: np.ndarray) -> pd.DataFrame:
+    columns = {f"covariance_{name}": covariance[:, i] for i, name in enumerate(sources["source"])}
+    return pd.DataFrame({"source": sources["source"], "mean": mean, **columns})
+
+
+def _sources(joint: Joint, sources: pd.DataFrame, used: pd.DataFrame) -> pd.DataFrame:
+    carried = pd.DataFrame(np.abs(joint.reduced.loadings) > 0, columns=sources["source"])
+    return sources.assign(
+        mean=joint.mean * sources["prior_std"],
+        std=np.sqrt(np.diag(joint.posterior)) * sources["prior_std"],
+        n_wells=carried.sum().to_numpy(),
+    )
+
+
+def _temperatures(
+    joint: Joint, estimates: pd.DataFrame, sources: pd.DataFrame, classes: list[str]
+) -> pd.DataFrame:
+    """Take the posterior mean of the sources out of the estimates, held-out wells included."""
+    is_rock = _is_rock(sources)
+    loadings = _loadings(estimates, sources["source"][~is_rock])
+    posterior = joint.posterior[np.ix_(~is_rock, ~is_rock)]
+    shift = loadings @ joint.mean[~is_rock]
+    scale = dict(zip(classes, np.sqrt(joint.scales), strict=True))
+    factor = estimates["variance_class"].map(scale).fillna(1.0).to_numpy(float)
+    final = estimates.assign(
+        temperature_degc=estimates["temperature_degc"] - shift,
+        correction_k=estimates["correction_k"] - shift,
+        temperature_std_k=estimates["temperature_std_k"] * factor,
+        well_std_k=estimates["well_std_k"] * factor,
+        shared_std_k=np.sqrt(np.einsum("ij,jk,ik->i", loadings, posterior, loadings)),
+    )
+    return final.loc[final["used"], list(Temperatures.columns)].reset_index(drop=True)
+
+
+def _heat_flow(
+    joint: Joint,
+    used: pd.DataFrame,
+    rock: pd.DataFrame,
+    sources: pd.DataFrame,
+    wells: pd.DataFrame,
+) -> pd.DataFrame:
+    """Heat flow of each well, sources at their posterior mean."""
+    reduced, is_rock = joint.reduced, _is_rock(sources)
+    left = joint.mean - joint.offset
+    shared = np.einsum("ij,jk,ik->i", reduced.loadings, joint.posterior, reduced.loadings)
+    ln_std = sources["prior_std"].to_numpy()[is_rock]
+    names = sources["source"][is_rock].str.removeprefix("conductivity:")
+    parts = rock[[f"resistance_{name}" for name in names]].to_numpy()
+    changed = parts * np.exp(-ln_std * joint.mean[is_rock])
+    resistance = rock["resistance_m2k_w"].to_numpy() - parts.sum(1) + changed.sum(1)
+    covariance = joint.posterior[np.ix_(is_rock, is_rock)]
+    share = changed * ln_std / resistance[:, None]
+    ln_var = np.einsum("ij,jk,ik->i", share, covariance, share)
+    ln_var += (rock["resistance_std_m2k_w"].to_numpy() / resistance) ** 2
+    rows = pd.DataFrame(
+        {
+            "well": used["well"],
+            "depth_m": used["depth_m"],
+            "conductivity_w_mk": used["depth_m"] / resistance,
+            "ln_std": np.sqrt(ln_var),
+            "origin": rock["origin"],
+        }
+    )
+    deepest = rows.loc[rows.groupby("well")["depth_m"].idxmax()].set_index("well")
+    deepest = deepest.reindex(wells["well"]).reset_index()
+    n_points = rows.groupby("well").size().reindex(wells["well"]).to_numpy()
+    several = np.where(n_points > 1, "several temperatures", "one temperature")
+    return pd.DataFrame(
+        {
+            "well": wells["well"],
+            "heat_flow_mw_m2": reduced.heat_flow - reduced.loadings @ left,
+            "heat_flow_std_mw_m2": np.sqrt(reduced.variance),
+            "heat_flow_shared_std_mw_m2": np.sqrt(shared),
+            "conductivity_w_mk": deepest["conductivity_w_mk"],
+            "conductivity_std_w_mk": deepest["conductivity_w_mk"] * deepest["ln_std"],
+            "n_points": n_points,
+            "method": np.where(n_points > 1, "bullard", "single_temperature"),
+            "quality": deepest["origin"] + " conductivity, " + pd.Series(several),
+            "effects": "none",
+        }
+    )
+
+
+def _map_points(joint: Joint, sources: pd.DataFrame, wells: pd.DataFrame) -> pd.DataFrame:
+    loadings = {
+        f"loading_{name}": joint.reduced.loadings[:, i] for i, name in enumerate(sources["source"])
+    }
+    return pd.DataFrame(
+        {
+            "well": wells["well"],
+            "easting_m": wells["easting_m"],
+            "northing_m": wells["northing_m"],
+            "value": joint.reduced.heat_flow,
+            "value_std": np.sqrt(joint.reduced.variance),
+            **loadings,
+        }
+    )
+
+
+def _variogram(joint: Joint, classes: list[str], xy: np.ndarray) -> dict[str, Any]:
+    """Describe the fitted covariance, and the scales that the stated variances needed."""
+    reduced = joint.reduced
+    value = reduced.heat_flow - reduced.loadings @ (joint.mean - joint.offset)
+    measured = experimental(
+        xy,
+        value,
+        reduced.variance,
+        loadings=reduced.loadings,
+        prior_covariance=joint.posterior,
+    )
+    return {
+        "quantity": "heat_flow",
+        "unit": "mW/m2",
+        "covariance": joint.covariance.to_dict(),
+        "experimental": measured.to_dict(),
+        "variance_scales": dict(zip(classes, joint.scales.tolist(), strict=True)),
+        "regional_mw_m2": joint.regional,
+    }

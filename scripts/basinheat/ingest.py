@@ -1,0 +1,146 @@
+"""Input files to clean tables: read, convert, place, merge and screen; nothing vanishes.
+
+Every row that a file holds ends as a row of a table or as a line of the ledger; the counts are
+checked at run time. Wells without readings stay in the wells (flag ``no_readings``): they show
+where a basin was drilled, and layers of them tell about the rock.
+"""
+
+from __future__ import annotations
+
+import logging
+from dataclasses import dataclass
+from pathlib import Path
+
+import numpy as np
+import pandas as pd
+
+from basinheat.decisions import Decisions
+from basinheat.flags import joined, mark
+from basinheat.ingest_layers import prepare_layers
+from basinheat.ingest_readings import attribute, clean_readings, place_readings
+from basinheat.ingest_wells import prepare_wells
+from basinheat.ledger import Ledger
+from basinheat.readers import InputTable, read_inputs
+from basinheat.screening import screen_against_neighbours, screen_records, screen_wells
+from basinheat.settings.model import Settings
+from basinheat.tables import Readings, Wells
+
+_log = logging.getLogger(__name__)
+
+
+@dataclass(frozen=True)
+class Prepared:
+    """What the inputs hold, cleaned: ``tables.Wells, Readings, Layers, Rejected``."""
+
+    wells: pd.DataFrame
+    readings: pd.DataFrame
+    layers: pd.DataFrame
+    rejected: pd.DataFrame
+
+
+def prepare(settings: Settings, folder: str | Path) -> Prepared:
+    """Read and screen all inputs of a config.
+
+    Parameters
+    ----------
+    settings : Settings
+        The config.
+    folder : str or Path
+        Where its relative paths start.
+
+    Returns
+    -------
+    Prepared
+
+    Raises
+    ------
+    UserError
+        For faults of whole files; a faulty record goes to the ledger instead.
+    """
+    ledger, inputs = Ledger(), settings.inputs
+    decisions = Decisions.load(inputs.decisions, folder)
+    tables = {
+        name: read_inputs(name, getattr(inputs, name), folder)
+        for name in ("wells", "readings", "layers", "surveys")
+    }
+    rows_in = {name: len(table) + len(table.broken) for name, table in tables.items()}
+    for table in tables.values():
+        ledger.broken(table)
+    wells, refused_wells = prepare_wells(tables["wells"], ledger, settings, folder, decisions)
+    readings = clean_readings(tables["readings"], ledger, inputs.readings, decisions)
+    readings = attribute(readings, ledger, wells, refused_wells)
+    layers = attribute(tables["layers"], ledger, wells, refused_wells)
+    stations = attribute(tables["surveys"], ledger, wells, refused_wells)
+    readings, surveys, stations = place_readings(readings, stations, ledger, wells)
+    rules = settings.screening
+    readings = screen_records(readings, ledger, rules, settings.correction.reading_std_k)
+    readings = screen_wells(readings, ledger, rules, settings.correction.same_depth_m)
+    readings = screen_against_neighbours(readings, ledger, rules)
+    out_layers = prepare_layers(layers, ledger, wells, surveys)
+    mark(wells, ~wells["well"].isin(readings.frame["well"]).to_numpy(), "no_readings")
+    decisions.audit(ledger)
+    kept = {
+        "wells": len(wells),
+        "readings": len(readings),
+        "layers": len(out_layers),
+        "surveys": len(stations),
+    }
+    _check_counts(rows_in, kept, ledger)
+    rejected = ledger.table()
+    _log_codes(kept, rejected)
+    return Prepared(_wells(wells), _readings(readings), out_layers, rejected)
+
+
+def _check_counts(rows_in: dict[str, int], kept: dict[str, int], ledger: Ledger) -> None:
+    """Stop where a row was lost or doubled on the way: that would be an error of this program."""
+    for name, rows in rows_in.items():
+        refused = ledger.rows_of(name)
+        if rows != kept[name] + refused:
+            raise RuntimeError(
+                f"{name}: {rows} rows read, {kept[name]} kept and {refused} refused or merged"
+            )
+
+
+def _log_codes(kept: dict[str, int], rejected: pd.DataFrame) -> None:
+    """Say how many rows were kept, and how many left by which rule."""
+    for name, rows in kept.items():
+        _log.info("%s: %d kept", name, rows)
+    for (table, code), rows in rejected.groupby(["table", "code"]).size().items():
+        _log.info("%s: %d %s", table, rows, code)
+
+
+def _wells(wells: pd.DataFrame) -> pd.DataFrame:
+    """Return ``tables.Wells``, by name."""
+    columns = [name for name in Wells.columns if name in wells and name != "flags"]
+    return Wells.conform(
+        wells[columns].assign(flags=joined(wells)).sort_values("well").reset_index(drop=True)
+    )
+
+
+def _readings(table: InputTable) -> pd.DataFrame:
+    """Return ``tables.Readings``, in an order that their content alone decides."""
+    frame = table.frame
+    out = pd.DataFrame(
+        {
+            "reading_id": frame["reading_id"],
+            "well": frame["well"],
+            "measured_depth_m": frame["depth"],
+            "depth_m": frame["depth_m"],
+            "depth_std_m": frame["depth_std_m"],
+            "temperature_degc": frame["temperature"],
+            "temperature_std_k": frame["temperature_std"],
+            "kind": frame["kind"],
+            "since_circulation_h": frame["since_circulation"],
+            "circulation_h": frame["circulation"],
+            "hole_radius_m": frame["hole_diameter"] / 2.0,
+            "mud_temperature_degc": frame["mud_temperature"],
+            "log_run": frame["log_run"],
+            "date": frame["date"],
+            "flags": joined(frame),
+            "source_file": frame["source_file"],
+            "source_line": frame["source_line"],
+        }
+    )
+    keys = ["well", "depth_m", "kind", "temperature_degc", "since_circulation_h", "reading_id"]
+    order = np.lexsort([out[key].to_numpy() for key in reversed(keys)]) if len(out) else []
+    return Readings.conform(out.iloc[order].reset_index(drop=True))

@@ -1,0 +1,81 @@
+"""Kriging of heat flow onto map cells, the shared sources with it."""
+
+from __future__ import annotations
+
+from typing import Any
+
+import pandas as pd
+
+from basinheat.geostat.engine_global import GlobalKriging
+from basinheat.geostat.models import Covariance
+
+
+def krige_heat_flow(
+    points: pd.DataFrame,
+    information: pd.DataFrame,
+    fitted: dict[str, Any],
+    cells: pd.DataFrame,
+    engine: str = "auto",
+    trend: str = "none",
+) -> pd.DataFrame:
+    """Krige surface heat flow, the shared sources with it.
+
+    Parameters
+    ----------
+    points : DataFrame
+        MapPoints: value, own standard uncertainty, loadings.
+    information : DataFrame
+        Mean and covariance of the amplitudes from inside the wells (SourceCovariance).
+    fitted : dict
+        variograms/heat_flow.json.
+    cells : DataFrame
+        Cells, or anything with row, col, easting_m, northing_m.
+    engine, trend : str
+        Settings of kriging.
+
+    Returns
+    -------
+    DataFrame
+        HeatFlowGrid.
+    """
+    krige = heat_flow_engine(points, information, fitted, engine, trend)
+    prediction = krige.predict(cells[["easting_m", "northing_m"]].to_numpy())
+    cross = {f"cross_{s}": prediction.cross[:, i] for i, s in enumerate(information["source"])}
+    return pd.DataFrame(
+        {
+            "row": cells["row"].to_numpy(),
+            "col": cells["col"].to_numpy(),
+            "heat_flow_mw_m2": prediction.mean,
+            "variance_mw2_m4": prediction.variance,
+            **cross,
+        }
+    )
+
+
+def heat_flow_engine(
+    points: pd.DataFrame,
+    information: pd.DataFrame,
+    fitted: dict[str, Any],
+    engine: str = "auto",
+    trend: str = "none",
+) -> Any:
+    """Return the kriging engine of heat flow, solved for the wells' values."""
+    names = information["source"]
+    return _engine(engine)(
+        points[["easting_m", "northing_m"]].to_numpy(),
+        Covariance.from_dict(fitted["covariance"]),
+        points["value_std"].to_numpy() ** 2,
+        trend=trend,
+        loadings=points[[f"loading_{name}" for name in names]].to_numpy(),
+        prior_mean=information["mean"].to_numpy(),
+        prior_covariance=information[[f"covariance_{name}" for name in names]].to_numpy(),
+    ).solve(points["value"].to_numpy())
+
+
+def _engine(name: str) -> type:
+    """Return the engine's class; PyKrige is loaded only where it is asked for."""
+    if name != "pykrige":
+        return GlobalKriging
+    from basinheat.geostat.engine_pykrige import PyKrigeKriging
+
+    return PyKrigeKriging

@@ -1,0 +1,194 @@
+"""Thermal resistance above each temperature, and the conductivity structure of the wells."""
+
+from __future__ import annotations
+
+import logging
+from dataclasses import dataclass
+
+import numpy as np
+import pandas as pd
+from numpy.typing import NDArray
+
+from basinheat import layerinput, regionalflow, rockpasses, section
+from basinheat.conductivity import catalogue
+from basinheat.rockmodel import ORIGINS, Below, RockModel
+from basinheat.rockpasses import Passes, Readings
+from basinheat.settings.heat import Conductivity, HeatFlow
+from basinheat.tables import Resistances, Sources, StructurePoints
+
+log = logging.getLogger(__name__)
+Array = NDArray[np.float64]
+
+
+@dataclass(frozen=True)
+class Rocks:
+    """What the rock gives: three tables, and the layers that could not be used."""
+
+    resistances: pd.DataFrame
+    structure: pd.DataFrame
+    sources: pd.DataFrame
+    rejected: pd.DataFrame
+
+
+def estimate(
+    estimates: pd.DataFrame,
+    wells: pd.DataFrame,
+    layers: pd.DataFrame,
+    conductivity: Conductivity,
+    heat_flow: HeatFlow,
+) -> Rocks:
+    """Integrate thermal resistance from the surface to each temperature.
+
+    Conductivity is taken at the temperature that the *neighbours'* heat flow gives, in two passes:
+    with the regional heat flow, then with that of the nearest wells.
+
+    Parameters
+    ----------
+    estimates, wells, layers : DataFrame
+        The tables of these names; wells with surface temperatures.
+    conductivity, heat_flow
+        Sections of the settings.
+
+    Returns
+    -------
+    Rocks
+        ``resistances`` row by row as ``estimates``; ``structure`` by well and depth interval;
+        ``sources``: ln k of each lithology in use.
+
+    Raises
+    ------
+    UserError
+        Faults of the catalogue; lithologies it does not know.
+    """
+    wells = wells.sort_values("well", ignore_index=True)
+    readings = _readings(estimates, wells)
+    model, rejected = _model(readings, wells, layers, conductivity)
+    passes = Passes(model, wells["surface_temperature_degc"].to_numpy(float), readings)
+    if heat_flow.regional_mw_m2 is None:
+        regional = rockpasses.regional_flow(passes)
+    else:
+        regional = heat_flow.regional_mw_m2 / 1000.0
+    count = len(wells)
+    flow, slowness, mean_slowness = rockpasses.first_pass(passes, np.full(count, regional))
+    covariance = section.spread(slowness, mean_slowness, model.interval_m)
+    xy = wells[["easting_m", "northing_m"]].to_numpy(float)
+    local = regionalflow.smoothed(xy, flow, regional)
+    log.info("heat flow for the temperature of the rock: %.1f mW/m2", 1000.0 * regional)
+    for name, rows in rejected.groupby("code"):
+        log.warning("%d layers not used: %s", len(rows), name)
+    rows, points = rockpasses.second_pass(passes, local, covariance, conductivity.well_std_ln)
+    return _tables(model, estimates, wells, rows, points, rejected)
+
+
+def _readings(estimates: pd.DataFrame, wells: pd.DataFrame) -> Readings:
+    """Return where resistances are wanted, wells as places."""
+    well = pd.Index(wells["well"]).get_indexer(estimates["well"])
+    if (well < 0).any():
+        raise KeyError("estimates name wells that the table of wells does not hold")
+    surface = wells["surface_temperature_degc"].to_numpy(float)
+    return Readings(
+        well,
+        estimates["depth_m"].to_numpy(float),
+        estimates["temperature_degc"].to_numpy(float) - surface[well],
+        estimates["used"].to_numpy(bool),
+    )
+
+
+def _model(
+    readings: Readings, wells: pd.DataFrame, layers: pd.DataFrame, settings: Conductivity
+) -> tuple[RockModel, pd.DataFrame]:
+    """Put the rock model together."""
+    rocks = catalogue.load(settings.catalogue)
+    beds, lithologies, default, rejected = layerinput.prepare(layers, wells, rocks, settings)
+    deepest = np.full(len(wells), settings.interval_m)
+    np.maximum.at(deepest, readings.well, readings.depth_m)
+    np.maximum.at(deepest, beds.well, beds.base_m)
+    step = settings.interval_m
+    if len(beds.well):
+        with_layers = len(np.unique(beds.well))
+        mean = section.mean_section(
+            beds.top_m,
+            beds.base_m,
+            beds.lithology,
+            len(lithologies.names),
+            step,
+            min(settings.wells_per_interval, with_layers),
+        )
+    else:
+        log.warning("no well has layers: %s assumed everywhere", settings.default_lithology)
+        mean = section.uniform(default, len(lithologies.names))
+    below = settings.below_layers
+    model = RockModel(
+        lithologies=lithologies,
+        beds=beds,
+        section=mean,
+        below=Below(
+            below.conductivity_w_mk,
+            below.std_ln,
+            below.growth_ln_per_km / 1000.0,
+            below.heat_production_uw_m3 * 1e-6,
+        ),
+        deepest_m=np.ceil(deepest / step - 1e-9) * step,
+        interval_m=step,
+        with_temperature=settings.temperature_law,
+    )
+    return model, rejected
+
+
+def _tables(
+    model: RockModel,
+    estimates: pd.DataFrame,
+    wells: pd.DataFrame,
+    rows: dict[str, Array],
+    points: dict[str, Array],
+    rejected: pd.DataFrame,
+) -> Rocks:
+    """Write the arrays into tables, with a column for each lithology in use."""
+    rocks = model.lithologies
+    in_use = [
+        j
+        for j in range(model.rocks)
+        if rows["resistance"][:, j].any() or points["loading"][:, j].any()
+    ]
+    total = rows["resistance"].sum(1)
+    depth = estimates["depth_m"].to_numpy(float)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        mean_conductivity = depth / total
+    resistances = pd.DataFrame(
+        {
+            "well": estimates["well"].to_numpy(object),
+            "depth_m": depth,
+            "resistance_m2k_w": total,
+            "resistance_std_m2k_w": np.sqrt(rows["variance"]),
+            "radiogenic_k": rows["radiogenic"].sum(1),
+            "conductivity_w_mk": mean_conductivity,
+            "origin": np.array(ORIGINS, dtype=object)[rows["origin"]],
+            **{f"resistance_{rocks.names[j]}": rows["resistance"][:, j] for j in in_use},
+            **{f"radiogenic_{rocks.names[j]}": rows["radiogenic"][:, j] for j in in_use},
+        }
+    )
+    loading, place, well = points.pop("loading"), points.pop("place"), points.pop("well")
+    structure = pd.DataFrame(
+        {
+            "well": wells["well"].to_numpy(object)[well],
+            "easting_m": wells["easting_m"].to_numpy(float)[well],
+            "northing_m": wells["northing_m"].to_numpy(float)[well],
+            "top_m": place * model.interval_m,
+            "base_m": (place + 1) * model.interval_m,
+            **points,
+            **{f"loading_conductivity:{rocks.names[j]}": loading[:, j] for j in in_use},
+        }
+    )
+    sources = pd.DataFrame(
+        {
+            "source": [f"conductivity:{rocks.names[j]}" for j in in_use],
+            "prior_std": rocks.std_ln[in_use],
+            "unit": "ln",
+        }
+    )
+    return Rocks(
+        Resistances.conform(resistances),
+        StructurePoints.conform(structure),
+        Sources.conform(sources.sort_values("source", ignore_index=True)),
+        rejected,
+    )

@@ -1,0 +1,188 @@
+"""The basin's rock: layers, catalogue and mean section, made into columns for any set of wells."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from basinheat.conductivity import porosity
+from basinheat.conductivity.conditions import LAW_NAMES
+from basinheat.rockcolumns import Columns, Parts
+from basinheat.section import Section
+from basinheat.slabs import Slabs, cut
+
+Array = NDArray[np.float64]
+Whole = NDArray[np.int64]
+
+LARGEST_STEP_M = 50.0
+CATALOGUE, MEASURED, BASIN_MEAN, ASSUMED = range(4)
+ORIGINS = ("catalogue", "measured", "basin_mean", "assumed")
+
+
+@dataclass(frozen=True)
+class Lithologies:
+    """Properties of the m lithologies in use; arrays (m,), as in the catalogue."""
+
+    names: tuple[str, ...]
+    conductivity_w_mk: Array
+    std_ln: Array
+    porosity_surface: Array
+    compaction_per_m: Array
+    heat_production_w_m3: Array
+    law: Whole
+
+
+@dataclass(frozen=True)
+class Beds:
+    """The l layers of all wells, by well and top, without overlaps; arrays (l,).
+
+    ``well`` and ``lithology`` are places; ``conductivity_w_mk`` (whole rock at 25 degC),
+    ``porosity`` and ``heat_production_w_m3`` are NaN where not measured; ``std_ln`` is the
+    relative uncertainty of the measured conductivity.
+    """
+
+    well: Whole
+    top_m: Array
+    base_m: Array
+    lithology: Whole
+    conductivity_w_mk: Array
+    std_ln: Array
+    porosity: Array
+    heat_production_w_m3: Array
+
+
+@dataclass(frozen=True)
+class Below:
+    """Rock below the mean section."""
+
+    conductivity_w_mk: float
+    std_ln: float
+    growth_ln_per_m: float
+    heat_production_w_m3: float
+    law: int = LAW_NAMES.index("vosteen2003_sed")
+
+
+@dataclass(frozen=True)
+class RockModel:
+    """All that is known of the rock of n wells; ``deepest_m`` (n,): where the columns end.
+
+    Groups of the columns are the m lithologies, then measured layers, then the rock below.
+    """
+
+    lithologies: Lithologies
+    beds: Beds
+    section: Section
+    below: Below
+    deepest_m: Array
+    interval_m: float
+    with_temperature: bool = True
+
+    @property
+    def step_m(self) -> float:
+        """Thickness of the slabs: a whole number of them makes an interval."""
+        return self.interval_m / np.ceil(self.interval_m / LARGEST_STEP_M)
+
+    @property
+    def rocks(self) -> int:
+        """Number of lithologies: also the place of the group of measured layers."""
+        return len(self.lithologies.names)
+
+    def columns(self, wells: Whole) -> Columns:
+        """Return the columns of some wells; places in them count within ``wells``."""
+        place = np.full(len(self.deepest_m), -1)
+        place[wells] = np.arange(len(wells))
+        mine = np.flatnonzero(place[self.beds.well] >= 0)
+        order = mine[np.lexsort((self.beds.top_m[mine], place[self.beds.well[mine]]))]
+        slabs = cut(
+            self.deepest_m[wells],
+            self.step_m,
+            place[self.beds.well[order]],
+            self.beds.top_m[order],
+            self.beds.base_m[order],
+        )
+        bed = np.where(slabs.layer >= 0, order[slabs.layer] if len(order) else -1, -1)
+        slabs = Slabs(slabs.start, slabs.well, slabs.top_m, slabs.base_m, bed)
+        return Columns(slabs, self._parts(slabs), self.rocks + 2, self.with_temperature)
+
+    def kind(self, slabs: Slabs) -> Whole:
+        """Return what each slab rests on: place in ``ORIGINS``."""
+        own = slabs.layer >= 0
+        measured = own & np.isfinite(self.beds.conductivity_w_mk[slabs.layer]) if own.any() else own
+        gap = np.where(
+            self.in_section(slabs) & np.isfinite(self.section.known_m), BASIN_MEAN, ASSUMED
+        )
+        return np.where(measured, MEASURED, np.where(own, CATALOGUE, gap))
+
+    def in_section(self, slabs: Slabs) -> NDArray[np.bool_]:
+        """Mark the slabs above the depth to which the mean section is known."""
+        return slabs.middle_m < self.section.known_m
+
+    def _parts(self, slabs: Slabs) -> Parts:
+        """Give each slab its parts: own layer, mean section or rock below."""
+        own = np.flatnonzero(slabs.layer >= 0)
+        gap = slabs.layer < 0
+        mean = np.flatnonzero(gap & self.in_section(slabs))
+        below = np.flatnonzero(gap & ~self.in_section(slabs))
+        share = self.section.at(slabs.middle_m[mean])
+        row, lithology = np.nonzero(share)
+        pieces = [
+            self._own(slabs, own),
+            self._catalogue(slabs, mean[row], lithology, share[row, lithology]),
+            self._below(below),
+        ]
+        joined = [np.concatenate(arrays) for arrays in zip(*pieces, strict=True)]
+        order = np.argsort(joined[0], kind="stable")
+        return Parts(*[array[order] for array in joined])
+
+    def _catalogue(
+        self, slabs: Slabs, slab: Whole, lithology: Whole, share: Array
+    ) -> tuple[NDArray, ...]:
+        rock = self.lithologies
+        return (
+            slab,
+            share,
+            rock.conductivity_w_mk[lithology],
+            porosity.athy_mean(
+                slabs.top_m[slab],
+                slabs.base_m[slab],
+                rock.porosity_surface[lithology],
+                rock.compaction_per_m[lithology],
+            ),
+            rock.law[lithology],
+            rock.heat_production_w_m3[lithology],
+            lithology,
+        )
+
+    def _own(self, slabs: Slabs, slab: Whole) -> tuple[NDArray, ...]:
+        """Parts of the wells' own layers: what is measured goes before the catalogue."""
+        beds, bed = self.beds, slabs.layer[slab]
+        _, share, k, phi, law, heat, group = self._catalogue(
+            slabs, slab, beds.lithology[bed], np.ones(len(slab))
+        )
+        measured = np.isfinite(beds.conductivity_w_mk[bed])
+        phi = np.where(np.isfinite(beds.porosity[bed]), beds.porosity[bed], phi)
+        return (
+            slab,
+            share,
+            np.where(measured, beds.conductivity_w_mk[bed], k),
+            np.where(measured, 0.0, phi),
+            law,
+            np.where(
+                np.isfinite(beds.heat_production_w_m3[bed]), beds.heat_production_w_m3[bed], heat
+            ),
+            np.where(measured, self.rocks, group),
+        )
+
+    def _below(self, slab: Whole) -> tuple[NDArray, ...]:
+        one = np.ones(len(slab))
+        return (
+            slab,
+            one,
+            self.below.conductivity_w_mk * one,
+            0.0 * one,
+            np.full(len(slab), self.below.law),
+            self.below.heat_production_w_m3 * one,
+            np.full(len(slab), self.rocks + 1),
+        )

@@ -1,0 +1,139 @@
+"""Rules that compare the readings of one well."""
+
+from __future__ import annotations
+
+import numpy as np
+import pandas as pd
+
+from basinheat.flags import mark
+from basinheat.ledger import Ledger
+from basinheat.readers import InputTable
+from basinheat.settings.wells import Screening
+
+COOLING_K = 0.5  # a fall with time below this is rounding
+
+
+def screen_wells(
+    table: InputTable, ledger: Ledger, rules: Screening, same_depth_m: float
+) -> InputTable:
+    """Apply the rules that compare the readings of one well.
+
+    Parameters
+    ----------
+    table : InputTable
+        Readings with ``depth_m``.
+    ledger : Ledger
+        Takes refused readings.
+    rules : Screening
+        Thresholds.
+    same_depth_m : float
+        Readings of one well closer than this are one set, m.
+    """
+    table = _repeated(table, ledger, rules.inconsistent_gap_m)
+    table = _copied(table, ledger, same_depth_m)
+    if len(table):
+        mark(table.frame, _cooling(table.frame, same_depth_m), "cooling_with_time")
+        mark(table.frame, _inconsistent(table.frame, rules, same_depth_m), "inconsistent_gradient")
+    return table
+
+
+def depth_sets(frame: pd.DataFrame, same_depth_m: float) -> np.ndarray:
+    """Return the number of the set of each reading: same well and kind, depths without a gap.
+
+    Parameters
+    ----------
+    frame : DataFrame, (n,)
+        Columns ``well, kind, depth_m``.
+    same_depth_m : float
+        Gap that parts sets, m.
+
+    Returns
+    -------
+    ndarray of int, (n,)
+    """
+    order = frame.sort_values(["well", "kind", "depth_m"], kind="stable")
+    new = (order[["well", "kind"]] != order[["well", "kind"]].shift()).any(axis=1)
+    new |= order["depth_m"].diff() > same_depth_m
+    return new.cumsum().loc[frame.index].to_numpy()
+
+
+def _repeated(table: InputTable, ledger: Ledger, gap_m: float) -> InputTable:
+    """Refuse the shallower of equal temperatures at depths too far apart to be equal."""
+    frame = table.frame
+    logged = (frame["kind"] == "bht").to_numpy()
+    rounded = frame["temperature"].round(4)
+    key = [frame["well"], rounded.where(logged)]
+    deepest = frame.groupby(key)["depth_m"].transform("max")
+    shallowest = frame.groupby(key)["depth_m"].transform("min")
+    repeated = (deepest - frame["depth_m"] > gap_m).to_numpy() & logged
+    flagged = (deepest == frame["depth_m"]) & (deepest - shallowest > gap_m)
+    mark(frame, flagged.to_numpy() & logged, "repeated_temperature")
+    frame["_deepest"] = deepest
+    out = ledger.screen(
+        table,
+        repeated,
+        "temperature",
+        "repeated_temperature",
+        "the same {temperature:.1f} degC stands at {depth_m:.0f} m and at {_deepest:.0f} m of this "
+        "well; a header was copied, and the deepest reading is kept.",
+    )
+    del out.frame["_deepest"]
+    return out
+
+
+def _copied(table: InputTable, ledger: Ledger, same_depth_m: float) -> InputTable:
+    """Keep the earliest of equal temperatures at one depth: they count once."""
+    frame = table.frame
+    keys = {
+        "set": depth_sets(frame, same_depth_m),
+        "degc": frame["temperature"].round(4),
+        "since": frame["since_circulation"].fillna(np.inf),
+        "run": frame["log_run"],
+        "id": frame["reading_id"],
+    }
+    order = pd.DataFrame(keys)
+    logged = (frame["kind"] == "bht").to_numpy()
+    twins = order.duplicated(["set", "degc"], keep=False).to_numpy() & logged
+    order = order.sort_values(["set", "degc", "since", "run", "id"], kind="stable")
+    later = order.duplicated(["set", "degc"]).loc[frame.index].to_numpy() & logged
+    mark(frame, twins & ~later, "copied_temperature")
+    return ledger.screen(
+        table,
+        later,
+        "temperature",
+        "copied_temperature",
+        "the same {temperature:.1f} degC was noted in an earlier run at this depth: the thermometer "
+        "was not reset or the value copied, and the earliest counts.",
+    )
+
+
+def _cooling(frame: pd.DataFrame, same_depth_m: float) -> np.ndarray:
+    """Tell which sets hold a temperature that falls with time since circulation."""
+    timed = frame[frame["since_circulation"].notna() & (frame["kind"] == "bht")]
+    out = np.zeros(len(frame), bool)
+    if len(timed) < 2:
+        return out
+    number = depth_sets(timed, same_depth_m)
+    ordered = timed.assign(_set=number).sort_values(["_set", "since_circulation"], kind="stable")
+    warmest = ordered.groupby("_set")["temperature"].cummax()
+    falls = (warmest - ordered["temperature"] > COOLING_K).groupby(ordered["_set"]).transform("any")
+    out[falls.index[falls.to_numpy()]] = True
+    return out
+
+
+def _inconsistent(frame: pd.DataFrame, rules: Screening, same_depth_m: float) -> np.ndarray:
+    """Tell which readings give an impossible gradient with the next set of their well."""
+    number = depth_sets(frame, same_depth_m)
+    sets = (
+        frame.assign(_set=number)
+        .groupby("_set")
+        .agg(well=("well", "first"), kind=("kind", "first"), z=("depth_m", "mean"), t=("temperature", "max"))
+    )
+    same = (sets[["well", "kind"]] == sets[["well", "kind"]].shift()).all(axis=1)
+    step = sets["z"].diff()
+    with np.errstate(divide="ignore", invalid="ignore"):
+        gradient = 1000.0 * sets["t"].diff() / step
+    low, high = rules.gradient_low_k_km / 2.0, rules.gradient_high_k_km
+    bad = same & (step >= rules.inconsistent_gap_m) & ((gradient < low) | (gradient > high))
+    both = bad | bad.shift(-1, fill_value=False)
+    return both.loc[number].to_numpy()

@@ -1,0 +1,14 @@
+"""Write the maps as rasters."""
+
+from basinheat import tables
+from basinheat.delivery import raster
+from basinheat.delivery.metadata import About
+from basinheat.grid import Grid
+from basinheat.logs import log_to
+from basinheat.settings.model import Settings
+
+log_to(snakemake.log[0])
+about = About.of(Settings(**snakemake.params.settings), snakemake.wildcards.scenario)
+maps = tables.Maps.load(snakemake.input.maps)
+grid = Grid.from_json(snakemake.input.grid)
+raster.write_all(maps, grid, snakemake.output.rasters, about)

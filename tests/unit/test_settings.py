@@ -1,0 +1,157 @@
+"""The config: complete settings per scenario, and the documents made from the models."""
+
+import copy
+import os
+from pathlib import Path
+
+import pytest
+import yaml
+from pydantic import ValidationError
+
+from basinheat.errors import UserError
+from basinheat.settings import document
+from basinheat.settings.columns import INPUT_COLUMNS, ONE_OF
+from basinheat.settings.files import input_files, input_tables, nearby, with_paths
+from basinheat.settings.load import OVERLAID, load_config, merged
+from basinheat.settings.model import Settings
+
+ROOT = Path(__file__).parents[2]
+DEMO = ROOT / "config" / "config.yaml"
+
+SMALLEST = {
+    "run": "small",
+    "crs": "EPSG:32631",
+    "inputs": {"wells": [{"file": "wells.csv"}], "readings": [{"file": "readings.csv"}]},
+}
+
+
+@pytest.fixture
+def folder(tmp_path):
+    """Return a folder with the smallest inputs."""
+    (tmp_path / "wells.csv").write_text("well,x,y\nA,500000,6000000\n", encoding="utf-8")
+    (tmp_path / "readings.csv").write_text("well,depth,temperature\nA,1000,40\n", encoding="utf-8")
+    return tmp_path
+
+
+def load(folder, **changes):
+    """Return the settings of the smallest config with sections laid over it."""
+    return load_config(merged(copy.deepcopy(SMALLEST), changes), "my.yaml", folder)
+
+
+def test_four_keys_are_enough(folder):
+    settings = load(folder)
+    assert list(settings) == ["base"]
+    assert settings["base"].correction.order[0] == "equilibrium"
+    assert settings["base"].surface_temperature.model == "linear"
+
+
+def test_the_demo_is_valid():
+    raw = yaml.safe_load(DEMO.read_text(encoding="utf-8"))
+    settings = load_config(raw, "config/config.yaml", DEMO.parent)
+    assert list(settings) == ["base"], "the demo has no scenario but base"
+    assert settings["base"].maps.depths_m == [1000.0, 2000.0, 3000.0]
+
+
+def test_settings_cannot_be_changed(folder):
+    with pytest.raises(ValidationError, match="frozen"):
+        load(folder)["base"].seed = 2
+
+
+def test_an_empty_section_means_its_defaults(folder):
+    assert load(folder, correction=None, kriging={"variogram": None}) == load(folder)
+
+
+def test_strings_from_the_command_line_become_numbers(folder):
+    settings = load(folder, seed="3", maps={"cell_size_m": "2000", "depths_m": ["500"]})["base"]
+    assert (settings.seed, settings.maps.cell_size_m, settings.maps.depths_m) == (3, 2000.0, [500.0])
+
+
+def test_a_scenario_merges_mappings_and_replaces_lists(folder):
+    settings = load(
+        folder,
+        correction={"order": ["dst", "harrison1983"], "same_depth_m": 20},
+        scenarios={"other": {"correction": {"order": ["horner"]}, "gradient": None}},
+    )
+    assert list(settings) == ["base", "other"]
+    assert settings["base"].correction.order == ["dst", "harrison1983"]
+    assert settings["other"].correction.order == ["horner"]
+    assert settings["other"].correction.same_depth_m == 20.0
+
+
+def test_a_scenario_may_take_another_surface_model(folder):
+    settings = load(
+        folder,
+        surface_temperature={"model": "linear", "at_sea_level_degc": 14, "std_k": 2.5},
+        scenarios={"flat": {"surface_temperature": {"model": "constant", "temperature_degc": 9}}},
+    )
+    flat = settings["flat"].surface_temperature
+    assert (flat.model, flat.temperature_degc, flat.std_k) == ("constant", 9.0, 2.5)
+
+
+@pytest.mark.parametrize("section", sorted(set(Settings.model_fields) - set(OVERLAID)))
+def test_a_scenario_changes_nothing_that_all_share(folder, section):
+    with pytest.raises(UserError, match=rf"scenarios\.other\.{section}: a scenario may change only"):
+        load(folder, scenarios={"other": {section: {}}})
+
+
+def test_a_fault_of_base_is_not_told_again_for_each_scenario(folder):
+    with pytest.raises(UserError) as caught:
+        load(folder, gradient={"reference_depth_m": -1}, scenarios={"a": {"heat_flow": {}}, "b": {}})
+    assert caught.value.faults == ["gradient.reference_depth_m: must be positive (got -1)"]
+
+
+def test_a_glob_finds_its_files_in_order(folder):
+    for name in ("b.csv", "a.csv"):
+        (folder / name).write_text("well,depth,temperature\n", encoding="utf-8")
+    settings = load(folder, inputs={"readings": [{"file": "[ab].csv"}]})["base"]
+    names = [Path(path).name for path in input_tables(settings.inputs, folder)]
+    assert names == ["a.csv", "b.csv", "wells.csv"]
+
+
+def test_paths_start_at_the_config(folder, monkeypatch, tmp_path_factory):
+    monkeypatch.chdir(tmp_path_factory.mktemp("elsewhere"))
+    (folder / "model.json").write_text("{}", encoding="utf-8")
+    settings = load(folder, kriging={"variogram": {"pinned": "model.json"}})["base"]
+    pinned = with_paths(settings, nearby(folder))["kriging"]["variogram"]["pinned"]
+    assert os.path.samefile(pinned, folder / "model.json")
+    assert pinned in input_files(settings, nearby(folder))
+
+
+def test_a_path_inside_the_current_folder_is_relative(folder, monkeypatch):
+    monkeypatch.chdir(folder)
+    assert nearby(folder / "sub" / "x.csv") == os.path.join("sub", "x.csv")
+    assert nearby(folder) == "."
+    assert os.path.isabs(nearby(folder.parent / "y.csv"))
+
+
+def test_plain_settings_rebuild_the_same_settings(folder):
+    """The params of a job give back the section it was made from."""
+    settings = load(folder)["base"]
+    plain = settings.model_dump(mode="json")
+    assert Settings(**plain) == settings
+
+
+def test_every_column_says_what_it_is():
+    for kind, columns in INPUT_COLUMNS.items():
+        assert all(column.description for column in columns.values())
+        assert {name for group in ONE_OF.get(kind, ()) for name in group} <= set(columns)
+        assert columns["well"].text, "well names are always text"
+
+
+def test_every_setting_is_described():
+    schema = Settings.model_json_schema()
+    models = [schema, *schema["$defs"].values()]
+    blank = [
+        f"{model['title']}.{name}"
+        for model in models
+        for name, field in model["properties"].items()
+        if not field.get("description") and name != "model"
+    ]
+    assert blank == []
+
+
+def test_the_readme_of_the_config_is_in_step():
+    text = (ROOT / "config" / "README.md").read_text(encoding="utf-8")
+    assert document.refreshed(text) == text, (
+        "make it anew: PYTHONPATH=scripts python -m basinheat.settings.document config/README.md"
+    )

@@ -1,0 +1,144 @@
+# What is handed over: rasters, GeoPackage, report, and a manifest of it all.
+#
+# Reads     results/{run}/wells/, results/{run}/{scenario}/tables/, .../maps/, .../variograms/
+# Writes    results/{run}/{scenario}/delivery/, complete in itself
+# Settings  all, to say what the maps were made with
+
+
+rule write_rasters:
+    input:
+        maps="results/{run}/{scenario}/maps/maps.parquet",
+        grid="results/{run}/{scenario}/maps/grid.json",
+    output:
+        rasters=directory("results/{run}/{scenario}/delivery/rasters"),
+    log:
+        "results/{run}/{scenario}/logs/write_rasters.log",
+    conda:
+        "../../envs/environment.yaml"
+    threads: 1
+    resources:
+        mem_mb=lambda wildcards, input: 2000 + 50 * int(input.size_mb),
+        runtime=20,
+    params:
+        settings=lambda wildcards: {
+            key: value
+            for key, value in SECTIONS[wildcards.scenario].items()
+            if key not in ("validation", "seed")
+        },
+        code=code_digest("write_rasters.py"),
+    message:
+        "Writing rasters ({wildcards.scenario})"
+    script:
+        "../../scripts/write_rasters.py"
+
+
+rule write_geopackage:
+    input:
+        maps="results/{run}/{scenario}/maps/maps.parquet",
+        grid="results/{run}/{scenario}/maps/grid.json",
+        wells="results/{run}/{scenario}/tables/wells.parquet",
+        temperatures="results/{run}/{scenario}/tables/temperatures.parquet",
+        gradients="results/{run}/{scenario}/tables/gradients.parquet",
+        heat_flow="results/{run}/{scenario}/tables/heat_flow.parquet",
+        rejected=[
+            "results/{run}/wells/rejected.parquet",
+            "results/{run}/{scenario}/tables/rejected.parquet",
+            "results/{run}/{scenario}/tables/rejected_layers.parquet",
+        ],
+    output:
+        geopackage="results/{run}/{scenario}/delivery/{run}.gpkg",
+    log:
+        "results/{run}/{scenario}/logs/write_geopackage.log",
+    conda:
+        "../../envs/environment.yaml"
+    threads: 1
+    resources:
+        mem_mb=lambda wildcards, input: 2000 + 50 * int(input.size_mb),
+        runtime=20,
+    params:
+        settings=lambda wildcards: SECTIONS[wildcards.scenario],
+        code=code_digest("write_geopackage.py"),
+    message:
+        "Writing the GeoPackage ({wildcards.scenario})"
+    script:
+        "../../scripts/write_geopackage.py"
+
+
+rule write_report:
+    input:
+        maps="results/{run}/{scenario}/maps/maps.parquet",
+        grid="results/{run}/{scenario}/maps/grid.json",
+        wells="results/{run}/{scenario}/tables/wells.parquet",
+        readings="results/{run}/wells/readings.parquet",
+        layers="results/{run}/wells/layers.parquet",
+        rejected=[
+            "results/{run}/wells/rejected.parquet",
+            "results/{run}/{scenario}/tables/rejected.parquet",
+            "results/{run}/{scenario}/tables/rejected_layers.parquet",
+        ],
+        temperatures="results/{run}/{scenario}/tables/temperatures.parquet",
+        resistances="results/{run}/{scenario}/tables/resistances.parquet",
+        heat_flow="results/{run}/{scenario}/tables/heat_flow.parquet",
+        sources="results/{run}/{scenario}/tables/sources.parquet",
+        recovery="results/{run}/{scenario}/tables/recovery.json",
+        crossval_heat_flow="results/{run}/{scenario}/tables/crossval/heat_flow.parquet",
+        crossval_temperature="results/{run}/{scenario}/tables/crossval/temperature.parquet",
+        scores="results/{run}/{scenario}/tables/crossval/scores.json",
+        heat_flow_model="results/{run}/{scenario}/variograms/heat_flow.json",
+        structure_model="results/{run}/{scenario}/variograms/conductivity.json",
+        template=f"{LIBRARY}/report/templates/report.html.j2",
+    output:
+        report="results/{run}/{scenario}/delivery/report.html",
+    log:
+        "results/{run}/{scenario}/logs/write_report.log",
+    conda:
+        "../../envs/environment.yaml"
+    threads: 1
+    resources:
+        mem_mb=lambda wildcards, input: 2000 + 50 * int(input.size_mb),
+        runtime=20,
+    params:
+        settings=lambda wildcards: SETTINGS[wildcards.scenario].model_dump(
+            mode="json", exclude={"scenarios"}
+        ),
+        code=code_digest("write_report.py"),
+    message:
+        "Drawing and writing the report ({wildcards.scenario})"
+    script:
+        "../../scripts/write_report.py"
+
+
+rule write_manifest:
+    input:
+        rasters="results/{run}/{scenario}/delivery/rasters",
+        geopackage="results/{run}/{scenario}/delivery/{run}.gpkg",
+        report="results/{run}/{scenario}/delivery/report.html",
+        grid="results/{run}/{scenario}/maps/grid.json",
+        rejected=[
+            "results/{run}/wells/rejected.parquet",
+            "results/{run}/{scenario}/tables/rejected.parquet",
+            "results/{run}/{scenario}/tables/rejected_layers.parquet",
+        ],
+        files=lambda wildcards: input_files(SETTINGS[wildcards.scenario], FOLDER),
+    output:
+        manifest="results/{run}/{scenario}/delivery/manifest.json",
+        readme="results/{run}/{scenario}/delivery/README.txt",
+        rejected="results/{run}/{scenario}/delivery/rejected.csv",
+    log:
+        "results/{run}/{scenario}/logs/write_manifest.log",
+    conda:
+        "../../envs/environment.yaml"
+    threads: 1
+    resources:
+        mem_mb=1000,
+        runtime=10,
+    params:
+        settings=lambda wildcards: SETTINGS[wildcards.scenario].model_dump(
+            mode="json", exclude={"scenarios"}
+        ),
+        folder=lambda wildcards: FOLDER,
+        code=code_digests(),
+    message:
+        "Closing the delivery with its manifest ({wildcards.scenario})"
+    script:
+        "../../scripts/write_manifest.py"
