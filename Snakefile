@@ -11,6 +11,7 @@ sys.path.insert(0, str(ROOT / "scripts"))
 
 from basinheat.provenance import code_digest, code_digests
 from basinheat.settings.files import (
+    data_files,
     input_files,
     input_tables,
     nearby,
@@ -25,7 +26,6 @@ if not workflow.configfiles:
     configfile: str(ROOT / "config" / "config.yaml")
 
 
-LIBRARY = nearby(ROOT / "scripts" / "basinheat")
 FOLDER = nearby(Path(workflow.configfiles[-1]).parent)
 SETTINGS = load_or_exit(
     config,

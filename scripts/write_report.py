@@ -1,6 +1,7 @@
 """Write the report: what was done, how far the maps can be trusted, pictures."""
 
 from basinheat import documents, provenance, tables
+from basinheat.conductivity import catalogue
 from basinheat.delivery.metadata import About
 from basinheat.grid import Grid
 from basinheat.logs import log_to
@@ -16,7 +17,8 @@ contents = Contents(
     wells=tables.Wells.load(snakemake.input.wells),
     readings=tables.Readings.load(snakemake.input.readings),
     layers=tables.Layers.load(snakemake.input.layers),
-    rejected=tables.Rejected.load_all(snakemake.input.rejected),
+    rejected=tables.Rejected.load(snakemake.input.rejected),
+    rejected_later=tables.Rejected.load_all(snakemake.input.rejected_later),
     temperatures=tables.Temperatures.load(snakemake.input.temperatures),
     resistances=tables.Resistances.load(snakemake.input.resistances),
     heat_flow=tables.HeatFlow.load(snakemake.input.heat_flow),
@@ -27,6 +29,7 @@ contents = Contents(
     heat_flow_model=documents.load(snakemake.input.heat_flow_model),
     structure_model=documents.load(snakemake.input.structure_model),
     recovery=documents.load(snakemake.input.recovery),
+    rocks=catalogue.load(snakemake.input.catalogue),
     settings=snakemake.params.settings,
     versions=provenance.versions(),
 )

@@ -48,7 +48,7 @@ class Decisions:
     def load(cls, path: str | Path | None, folder: str | Path) -> Decisions:
         """Read the decisions; none where no file is named."""
         if path is None:
-            return cls(pd.DataFrame({name: [] for name in (*COLUMNS, "source_file", "source_line")}))
+            return cls(pd.DataFrame(columns=[*COLUMNS, "source_file", "source_line"]))
         full = Path(folder) / path
         spec = TableFile(file=str(path))
         present = headers(full, spec)
@@ -104,9 +104,7 @@ class Decisions:
         table = ledger.refuse(
             table, refused, "", "reviewed_reject", "refused by a reviewer: {_why}."
         )
-        return InputTable(
-            table.name, table.frame.drop(columns="_why"), table.headers, table.broken
-        )
+        return table.with_frame(table.frame.drop(columns="_why"))
 
     def mark_kept(self, table: InputTable) -> None:
         """Give the table a column ``kept``: records that the rules may not refuse."""
@@ -155,7 +153,7 @@ class Decisions:
             )
         )
 
-    def _matched(self, table: InputTable, action: str, wells_too: bool = False):  # noqa: ANN202
+    def _matched(self, table: InputTable, action: str, wells_too: bool = False):
         """Yield number, line and rows of the valid decisions of an action on this table."""
         frame, readings = table.frame, table.name == "readings"
         for number, line in enumerate(self._lines.to_dict("records")):

@@ -76,25 +76,23 @@ def vertical(
     extent = np.where(np.isfinite(measured_m), measured_m, below)
     crossed = noted & (below > measured_m * (1.0 + SURVEYED_SHARE) + 1.0)
     std = np.where(crossed, below - measured_m, share * np.abs(extent))
-    height, height_std = (wells[name].to_numpy(float)[well] for name in ("height_m", "height_std_m"))
+    height, height_std = (
+        wells[name].to_numpy(float)[well] for name in ("height_m", "height_std_m")
+    )
     return Vertical(
         below - height, np.hypot(std, height_std), below, ~noted & ~surveyed, beyond, crossed
     )
 
 
-def surveys_of(
-    table: InputTable, ledger: Ledger, wells: pd.Index
-) -> tuple[trajectory.Surveys, InputTable]:
+def surveys_of(table: InputTable, ledger: Ledger) -> tuple[trajectory.Surveys, InputTable]:
     """Return the surveys of the wells, and the stations that were used.
 
     Parameters
     ----------
     table : InputTable
-        Surveys of known wells.
+        Surveys of known wells; ``row`` of the well becomes its ``hole``.
     ledger : Ledger
         Takes stations that cannot stand.
-    wells : Index
-        Names of the wells, in the order that ``hole`` counts.
     """
     frame = table.frame
     low = ~(frame["depth"] >= 0.0).to_numpy()
@@ -109,17 +107,15 @@ def surveys_of(
         "inclination_impossible",
         "the inclination must lie between 0 and 180 degrees from the vertical.",
     )
-    keys = ["well", "depth", "inclination", "azimuth", "source_file", "source_line"]
+    keys = ["row", "depth", "inclination", "azimuth", "source_file", "source_line"]
     frame = table.frame.sort_values(keys, kind="stable").reset_index(drop=True)
-    table = InputTable(table.name, frame, table.headers, table.broken)
-    same = frame.duplicated(["well", "depth", "inclination", "azimuth"]).to_numpy()
+    table = table.with_frame(frame)
+    same = frame.duplicated(["row", "depth", "inclination", "azimuth"]).to_numpy()
     table = ledger.refuse(table, same, "", "merged", "the same station stands in another row.")
-    twice = table.frame.duplicated(["well", "depth"]).to_numpy()
+    twice = table.frame.duplicated(["row", "depth"], keep=False).to_numpy()
     table = ledger.refuse(
-        table, twice, "depth", "station_conflict", "another station of the well has this depth."
+        table, twice, "depth", "station_conflict", "stations of the well at this depth differ."
     )
     frame = table.frame
-    hole = wells.get_indexer(frame["well"]).astype(np.int64)
-    order = np.lexsort((frame["depth"].to_numpy(), hole))
-    columns = (frame[n].to_numpy(float)[order] for n in ("depth", "inclination", "azimuth"))
-    return trajectory.survey(hole[order], *columns), table
+    columns = (frame[name].to_numpy(float) for name in ("depth", "inclination", "azimuth"))
+    return trajectory.survey(frame["row"].to_numpy(np.int64), *columns), table

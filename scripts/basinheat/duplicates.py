@@ -64,13 +64,13 @@ def one_row_a_well(table: InputTable, ledger: Ledger, distance_m: float) -> Inpu
     keys = ["easting_m", "northing_m", *_WELL_VALUES, "source_file", "source_line"]
     ordered = frame.assign(_blank=-filled).sort_values(["well", "_blank", *keys], kind="stable")
     again = ordered["well"].duplicated()
-    spread = ordered.groupby("well", sort=False)[_WELL_VALUES].transform(lambda v: v.max() - v.min())
-    first = ordered.groupby("well", sort=False)[_WELL_VALUES].transform("first")
-    ordered[_WELL_VALUES] = first
+    rows = ordered.groupby("well", sort=False)[_WELL_VALUES]
+    spread = rows.transform("max") - rows.transform("min")
+    ordered[_WELL_VALUES] = rows.transform("first")
     ordered = ordered.drop(columns="_blank").reset_index(drop=True)
     mark(ordered, (spread > 1.0).any(axis=1).to_numpy(), "rows_disagree")
-    sentence = "the well stands in another row already; blanks of that row are filled from this one."
-    table = InputTable(table.name, ordered, table.headers, table.broken)
+    sentence = "the well stands in another row, whose blanks are filled from this one."
+    table = table.with_frame(ordered)
     return ledger.refuse(table, again.to_numpy(), "well", "merged", sentence)
 
 
@@ -91,13 +91,13 @@ def _agreeing(table: InputTable, ledger: Ledger, distance_m: float) -> InputTabl
     lines = frame["source_file"] + ", line " + frame["source_line"].astype(str)
     text = lines.sort_values().groupby(frame["well"]).agg("; ".join)
     frame["_rows"] = frame["well"].map(text)
-    table = InputTable(table.name, frame, table.headers, table.broken)
+    table = table.with_frame(frame)
     sentence = (
         "rows of this well lie up to {_apart:.1f} km apart ({_rows}) and no majority of them lies "
         "together. Mend the coordinates, or give different wells different names."
     )
     out = ledger.refuse(table, conflict, "x", "well_location_conflict", sentence)
-    return InputTable(out.name, out.frame.drop(columns=["_apart", "_rows"]), out.headers, out.broken)
+    return out.with_frame(out.frame.drop(columns=["_apart", "_rows"]))
 
 
 def reading_ids(frame: pd.DataFrame) -> np.ndarray:
@@ -144,10 +144,11 @@ def merged(table: InputTable, ledger: Ledger) -> InputTable:
     ledger : Ledger
         Takes the rows that are merged away.
     """
+    copies = table.frame[table.frame.duplicated("reading_id", keep=False)]
     order = ["reading_id", "source_file", "source_line"]
-    frame = table.frame.sort_values(order, kind="stable").reset_index(drop=True)
-    table = InputTable(table.name, frame, table.headers, table.broken)
-    again = frame["reading_id"].duplicated().to_numpy()
+    copies = copies[order].sort_values(order, kind="stable")
+    again = np.zeros(len(table), bool)
+    again[copies.index[copies["reading_id"].duplicated()]] = True
     table = ledger.refuse(table, again, "", "merged", "the same reading stands in another row.")
     key = ["well", "depth", "temperature", "kind"]
     twins = np.flatnonzero(table.frame.duplicated(key, keep=False).to_numpy())

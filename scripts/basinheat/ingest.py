@@ -77,7 +77,7 @@ def prepare(settings: Settings, folder: str | Path) -> Prepared:
     readings = screen_wells(readings, ledger, rules, settings.correction.same_depth_m)
     readings = screen_against_neighbours(readings, ledger, rules)
     out_layers = prepare_layers(layers, ledger, wells, surveys)
-    mark(wells, ~wells["well"].isin(readings.frame["well"]).to_numpy(), "no_readings")
+    mark(wells, ~np.isin(np.arange(len(wells)), readings.frame["row"]), "no_readings")
     decisions.audit(ledger)
     kept = {
         "wells": len(wells),
@@ -112,9 +112,7 @@ def _log_codes(kept: dict[str, int], rejected: pd.DataFrame) -> None:
 def _wells(wells: pd.DataFrame) -> pd.DataFrame:
     """Return ``tables.Wells``, by name."""
     columns = [name for name in Wells.columns if name in wells and name != "flags"]
-    return Wells.conform(
-        wells[columns].assign(flags=joined(wells)).sort_values("well").reset_index(drop=True)
-    )
+    return Wells.conform(wells[columns].assign(flags=joined(wells)))
 
 
 def _readings(table: InputTable) -> pd.DataFrame:
@@ -141,6 +139,8 @@ def _readings(table: InputTable) -> pd.DataFrame:
             "source_line": frame["source_line"],
         }
     )
-    keys = ["well", "depth_m", "kind", "temperature_degc", "since_circulation_h", "reading_id"]
-    order = np.lexsort([out[key].to_numpy() for key in reversed(keys)]) if len(out) else []
+    # Wells are in the order of their names; ids are of one length: short bytes sort fast.
+    ids = out["reading_id"].to_numpy().astype("S17")
+    numbers = (out[name] for name in ("since_circulation_h", "temperature_degc", "depth_m"))
+    order = np.lexsort([ids, *numbers, frame["row"]])
     return Readings.conform(out.iloc[order].reset_index(drop=True))

@@ -51,7 +51,7 @@ def prepare_layers(
     """
     table = _complete(table, ledger)
     frame = table.frame
-    well = pd.Index(wells["well"]).get_indexer(frame["well"])
+    well = frame["row"].to_numpy()
     nothing = np.full(len(frame), np.nan)
     for name in ("top", "base"):
         measured = frame[name].to_numpy(float)
@@ -118,13 +118,11 @@ def _one_level(table: InputTable, ledger: Ledger) -> InputTable:
     while True:
         frame = table.frame
         thickness = frame["base_m"] - frame["top_m"]
-        keys = ["well", "top_m", "_thin", "lithology", "source_file", "source_line"]
+        keys = ["row", "top_m", "_thin", "lithology", "source_file", "source_line"]
         frame = frame.assign(_thin=-thickness).sort_values(keys, kind="stable")
-        table = InputTable(
-            table.name, frame.drop(columns="_thin").reset_index(drop=True), table.headers, table.broken
-        )
+        table = table.with_frame(frame.drop(columns="_thin").reset_index(drop=True))
         frame = table.frame
-        same = frame["well"] == frame["well"].shift(-1)
+        same = frame["row"] == frame["row"].shift(-1)
         overlap = same & (frame["base_m"] > frame["top_m"].shift(-1) + OVERLAP_M)
         if not overlap.any():
             return table
@@ -135,6 +133,6 @@ def _one_level(table: InputTable, ledger: Ledger) -> InputTable:
             continue
         second = overlap.shift(1, fill_value=False).to_numpy(bool)
         # Of a run of overlaps only the first is judged: without it the next may fit.
-        second &= ~np.r_[False, second[:-1]]
+        second = second & ~np.r_[False, second[:-1]]
         sentence = "its top at {top:g} m lies above the base of the layer before; mend one of them."
         table = ledger.refuse(table, second, "top", "layer_overlap", sentence)

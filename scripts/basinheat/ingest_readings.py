@@ -79,32 +79,31 @@ def clean_readings(
 def attribute(
     table: InputTable, ledger: Ledger, wells: pd.DataFrame, refused: set[str]
 ) -> InputTable:
-    """Refuse rows of wells that are not known or were refused."""
+    """Refuse rows of wells that are not known or were refused; ``row`` is that of the well."""
     names = table.frame["well"]
     nameless = (names == "").to_numpy()
     table = ledger.refuse(table, nameless, "well", "no_well", "the row names no well.")
-    names = table.frame["well"]
-    of_refused = names.isin(refused).to_numpy()
+    table.frame["row"] = _rows(table.frame["well"], wells["well"])
+    of_refused = table.frame["well"].isin(sorted(refused)).to_numpy()
     table = ledger.refuse(
         table, of_refused, "well", "well_rejected", "the well was refused: see its own line."
     )
-    names = table.frame["well"]
-    unknown = ~names.isin(wells["well"]).to_numpy()
-    table.frame["_near"] = _similar(names.where(unknown, ""), wells["well"])
-    out = ledger.refuse(
+    frame = table.frame
+    unknown = (frame["row"] < 0).to_numpy()
+    if unknown.any():
+        frame["_near"] = _similar(frame["well"].where(unknown, ""), wells["well"])
+    return ledger.refuse(
         table, unknown, "well", "unknown_well", "the wells hold no such name{_near}."
     )
-    return InputTable(out.name, out.frame.drop(columns="_near"), out.headers, out.broken)
 
 
 def place_readings(
     readings: InputTable, stations: InputTable, ledger: Ledger, wells: pd.DataFrame
 ) -> tuple[InputTable, trajectory.Surveys, InputTable]:
     """Return readings with depth below ground or sea floor, the surveys and their used stations."""
-    index = pd.Index(wells["well"])
-    surveys, stations = depths.surveys_of(stations, ledger, index)
+    surveys, stations = depths.surveys_of(stations, ledger)
     frame = readings.frame
-    well = index.get_indexer(frame["well"])
+    well = frame["row"].to_numpy()
     measured, noted = (frame[name].to_numpy(float) for name in ("depth", "vertical_depth"))
     found = depths.vertical(measured, noted, well, wells, surveys)
     frame["depth_m"], frame["depth_std_m"] = found.depth_m, found.depth_std_m
@@ -177,6 +176,12 @@ def _complete(table: InputTable, ledger: Ledger) -> InputTable:
         'kind "{kind_word}" is not known; say under `kinds` which of bht, dst, equilibrium or '
         "corrected it is.",
     )
+
+
+def _rows(names: pd.Series, wells: pd.Series) -> np.ndarray:
+    """Return the row of each name among the wells, -1 where it is not there."""
+    codes, unique = pd.factorize(names)
+    return pd.Index(wells).get_indexer(unique)[codes] if len(unique) else codes
 
 
 def _set(frame: pd.DataFrame) -> pd.Series:

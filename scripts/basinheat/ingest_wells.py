@@ -74,6 +74,8 @@ def prepare_wells(
         table.frame["_dem"] = dem
     table = screen_locations(table, ledger, settings.screening, settings.crs, dem)
     table = one_row_a_well(table, ledger, settings.screening.same_well_distance_m)
+    ordered = table.frame.sort_values("well", kind="stable").reset_index(drop=True)
+    table = table.with_frame(ordered)
     table, surface_degc = _with_surface(table, ledger, settings, folder)
     wells = _finished(table)
     wells["screening_degc"] = surface_degc
@@ -170,7 +172,9 @@ def _with_surface(
 def _finished(table: InputTable) -> pd.DataFrame:
     """Return the wells with the columns of their contract and the height of the datum."""
     frame = table.frame
-    noted = (frame[n].to_numpy(float) for n in ("ground_elevation", "datum_elevation", "water_depth"))
+    noted = (
+        frame[n].to_numpy(float) for n in ("ground_elevation", "datum_elevation", "water_depth")
+    )
     datum = datums.heights(*noted)
     out = frame.copy()
     out["ground_elevation_m"] = datum.ground_m

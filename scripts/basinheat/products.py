@@ -20,7 +20,7 @@ from basinheat.rebuild import (
 Floats = NDArray[np.float64]
 
 BLOCK = 20_000  # cells at once: bounds memory whatever the grid
-SURFACE = "surface_temperature"
+SURFACE, PRODUCTION = "surface_temperature", "rock:heat_production"
 
 
 def derive(
@@ -78,7 +78,8 @@ def shared_sources(sources: pd.DataFrame, source_covariance: pd.DataFrame) -> So
         mean=source_covariance["mean"].to_numpy(),
         covariance=source_covariance[[f"covariance_{name}" for name in names]].to_numpy(),
         surface_shift=np.where(names == SURFACE, sources["prior_std"], 0.0),
-        rock=np.flatnonzero(names.str.startswith("conductivity:")),
+        production_share=np.where(names == PRODUCTION, sources["prior_std"], 0.0),
+        rock=np.flatnonzero(names.str.startswith(("conductivity:", "rock:"))),
     )
 
 

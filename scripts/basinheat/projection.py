@@ -47,9 +47,10 @@ def project(x: Array, y: Array, source: str, target: str) -> Projected:
     """Transform coordinates; x is always easting or longitude.
 
     Of the operations that the installed database knows for the two systems, each point takes the
-    most accurate one whose area of use holds it, of equals that of the smallest area. Where only a ballpark is left (a grid file that
-    is not installed; grids are never fetched), the way over WGS 84 by a published Helmert shift is
-    taken, and the accuracies of both steps are added in quadrature.
+    most accurate one whose area of use holds it, of equals that of the smallest area. Where only a
+    ballpark is left (a grid file that is not installed; grids are never fetched), the way over
+    WGS 84 by a published Helmert shift is taken, and the accuracies of both steps are added in
+    quadrature.
 
     Parameters
     ----------
@@ -119,7 +120,7 @@ def _operations(source: str, target: str) -> list:
     return sorted(known, key=lambda one: (one.accuracy, _size(one.area_of_use))) + ballparks
 
 
-def _size(area) -> float:  # noqa: ANN001
+def _size(area) -> float:
     """Return the share of the globe that an area of use covers; the smaller fits better."""
     if area is None:
         return 2.0
@@ -141,7 +142,7 @@ def _geographic(x: Array, y: Array, source: str) -> tuple[Array, Array]:
     return np.where(bad, np.nan, longitude), np.where(bad, np.nan, latitude)
 
 
-def _within(area, longitude: Array, latitude: Array) -> NDArray[np.bool_]:  # noqa: ANN001
+def _within(area, longitude: Array, latitude: Array) -> NDArray[np.bool_]:
     """Tell which points lie in an area of use (which may cross the date line)."""
     if area is None:
         return np.ones(longitude.shape, bool)

@@ -36,13 +36,15 @@ class Structure:
 class Sources:
     """Posterior of the m amplitudes, and which of them move surface and rock.
 
-    ``mean`` (m,), ``covariance`` (m, m), ``surface_shift`` (m,) K per unit amplitude,
-    ``rock`` (k,) int: place of each lithology source among the amplitudes.
+    ``mean`` (m,), ``covariance`` (m, m), ``surface_shift`` (m,) K and ``production_share`` (m,)
+    relative change of heat production per unit amplitude, ``rock`` (k,) int: place of each source
+    of conductivity among the amplitudes.
     """
 
     mean: Floats
     covariance: Floats
     surface_shift: Floats
+    production_share: Floats
     rock: NDArray[np.int64]
 
 
@@ -119,6 +121,9 @@ def rebuild_columns(
             to_flow = to_flow * carry + step.resistance * half
             to_surface = to_surface * carry
             to_sources *= carry[:, None]
+            # heat made above leaves the flux, so it cools what is below
+            cooling = (heat_flow.value - step.flow) * step.resistance * half
+            to_sources -= np.outer(cooling, sources.production_share)
             to_sources[:, sources.rock] -= (step.rise * half)[:, None] * structure.loadings[:, i - 1]
             error = step.rise * half * np.sqrt(structure.variance[:, i - 1])
             tie = structure.vertical_correlation[i - 1] * own_next
@@ -140,14 +145,17 @@ class _Step:
         self, structure: Structure, i: int, top: Floats, flow: Floats, sources: Sources
     ) -> None:
         h = structure.edges[i + 1] - structure.edges[i]
-        self.loss = structure.heat_production[:, i] * h * 1e-3
+        level = 1.0 + sources.production_share @ sources.mean
+        self.loss = level * structure.heat_production[:, i] * h * 1e-3
+        self.flow = flow - 0.5 * self.loss
         base = structure.ln_conductivity[:, i] + structure.loadings[:, i] @ sources.mean[sources.rock]
         slope = structure.temperature_slope[:, i]
         middle = top
         for _ in range(FIXED_POINT_STEPS):
             ln_k = base + slope * (middle - structure.reference_temperature[:, i])
-            self.resistance = 1e-3 * h * np.exp(-ln_k)
-            self.rise = (flow - 0.5 * self.loss) * self.resistance
+            # the mean of 1/k, not its median: resistances add
+            self.resistance = 1e-3 * h * np.exp(0.5 * structure.variance[:, i] - ln_k)
+            self.rise = self.flow * self.resistance
             middle = top + 0.5 * self.rise
         # hotter rock conducts less, so an error from above grows on its way down
         self.feedback = 1.0 - slope * self.rise

@@ -19,6 +19,12 @@ from basinheat.tables import Resistances, Sources, StructurePoints
 log = logging.getLogger(__name__)
 Array = NDArray[np.float64]
 
+# What is uncertain about all rock at once, beside the level of each lithology. Published laws of
+# k(T) differ by 5 to 15 % at 100 degC, about a third of the fall; surface porosities and heat
+# productions of one rock differ by 10 and 20 % between basins (common practice, no source).
+LAW, COMPACTION, PRODUCTION = "rock:temperature_law", "rock:compaction", "rock:heat_production"
+PRIOR_STD = {LAW: 0.3, COMPACTION: 0.1, PRODUCTION: 0.2}
+
 
 @dataclass(frozen=True)
 class Rocks:
@@ -77,7 +83,23 @@ def estimate(
     for name, rows in rejected.groupby("code"):
         log.warning("%d layers not used: %s", len(rows), name)
     rows, points = rockpasses.second_pass(passes, local, covariance, conductivity.well_std_ln)
-    return _tables(model, estimates, wells, rows, points, rejected)
+    changes = {}
+    for source, varied in _variants(model).items():
+        altered = Passes(varied, passes.surface_degc, readings)
+        other = rockpasses.second_pass(altered, local, covariance, conductivity.well_std_ln)
+        changes[source] = (
+            other[0]["resistance"].sum(1) - rows["resistance"].sum(1),
+            other[1]["value"] - points["value"],
+        )
+    return _tables(model, estimates, wells, rows, points, changes, rejected)
+
+
+def _variants(model: RockModel) -> dict[str, RockModel]:
+    """Return the model one standard deviation away, by source."""
+    variants = {COMPACTION: model.with_porosity(float(np.exp(PRIOR_STD[COMPACTION])))}
+    if model.with_temperature:
+        variants[LAW] = model.with_law_strength(1.0 + PRIOR_STD[LAW])
+    return variants
 
 
 def _readings(estimates: pd.DataFrame, wells: pd.DataFrame) -> Readings:
@@ -141,9 +163,10 @@ def _tables(
     wells: pd.DataFrame,
     rows: dict[str, Array],
     points: dict[str, Array],
+    changes: dict[str, tuple[Array, Array]],
     rejected: pd.DataFrame,
 ) -> Rocks:
-    """Write the arrays into tables, with a column for each lithology in use."""
+    """Write the arrays into tables, with a column for each lithology and source in use."""
     rocks = model.lithologies
     in_use = [
         j
@@ -162,9 +185,10 @@ def _tables(
             "resistance_std_m2k_w": np.sqrt(rows["variance"]),
             "radiogenic_k": rows["radiogenic"].sum(1),
             "conductivity_w_mk": mean_conductivity,
-            "origin": np.array(ORIGINS, dtype=object)[rows["origin"]],
+            "origin": np.array(ORIGINS, dtype=object)[rows["origin"].astype(int)],
             **{f"resistance_{rocks.names[j]}": rows["resistance"][:, j] for j in in_use},
             **{f"radiogenic_{rocks.names[j]}": rows["radiogenic"][:, j] for j in in_use},
+            **{f"change_{source}": change for source, (change, _) in changes.items()},
         }
     )
     loading, place, well = points.pop("loading"), points.pop("place"), points.pop("well")
@@ -177,13 +201,16 @@ def _tables(
             "base_m": (place + 1) * model.interval_m,
             **points,
             **{f"loading_conductivity:{rocks.names[j]}": loading[:, j] for j in in_use},
+            **{f"loading_{source}": change for source, (_, change) in changes.items()},
         }
     )
+    prior = {f"conductivity:{rocks.names[j]}": (rocks.std_ln[j], "ln") for j in in_use}
+    prior |= {source: (PRIOR_STD[source], "relative") for source in [*changes, PRODUCTION]}
     sources = pd.DataFrame(
         {
-            "source": [f"conductivity:{rocks.names[j]}" for j in in_use],
-            "prior_std": rocks.std_ln[in_use],
-            "unit": "ln",
+            "source": list(prior),
+            "prior_std": [std for std, _ in prior.values()],
+            "unit": [unit for _, unit in prior.values()],
         }
     )
     return Rocks(

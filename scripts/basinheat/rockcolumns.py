@@ -44,12 +44,16 @@ class Parts:
 
 @dataclass(frozen=True)
 class Columns:
-    """Rock columns: slabs, their parts, the number of groups, and whether k follows temperature."""
+    """Rock columns: slabs, their parts, the number of groups, and how k follows temperature.
+
+    ``law_strength``: power on k(T) / k(25 degC), 1 for the laws as published.
+    """
 
     slabs: Slabs
     parts: Parts
     groups: int
     with_temperature: bool = True
+    law_strength: float = 1.0
 
 
 @dataclass(frozen=True)
@@ -156,7 +160,8 @@ def by_group(columns: Columns, values: Array) -> Array:
     """Sum values of parts, (p,), by slab and group: (s, g)."""
     parts, shape = columns.parts, (len(columns.slabs.well), columns.groups)
     place = parts.slab * columns.groups + parts.group
-    return np.bincount(place, values, shape[0] * shape[1]).reshape(shape)
+    total: Array = np.bincount(place, values, shape[0] * shape[1]).astype(float, copy=False)
+    return total.reshape(shape)
 
 
 def _conductivity(columns: Columns, temperature_degc: Array) -> Array:
@@ -164,8 +169,9 @@ def _conductivity(columns: Columns, temperature_degc: Array) -> Array:
     parts = columns.parts
     if not columns.with_temperature:
         temperature_degc = np.full_like(temperature_degc, conditions.REFERENCE_DEGC)
-    matrix = conditions.at_temperature(
-        parts.conductivity_w_mk, temperature_degc[parts.slab], parts.law
-    )
+    cold = parts.conductivity_w_mk
+    matrix = conditions.at_temperature(cold, temperature_degc[parts.slab], parts.law)
+    if columns.law_strength != 1.0:
+        matrix = cold * (matrix / cold) ** columns.law_strength
     fluid = conditions.water(temperature_degc)[parts.slab]
     return np.where(parts.porosity > 0.0, matrix * (fluid / matrix) ** parts.porosity, matrix)

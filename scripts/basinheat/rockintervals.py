@@ -108,7 +108,7 @@ def gap_above(
     place = np.floor(slabs.middle_m / model.interval_m).astype(np.int64)
     gap = slabs.thickness_m * ((slabs.layer < 0) & model.in_section(slabs))
     wells = len(slabs.start) - 1
-    flat = np.bincount(slabs.well * intervals + place, gap, wells * intervals)
+    flat: Array = np.bincount(slabs.well * intervals + place, gap, wells * intervals).astype(float)
     passed = depth_m[:, None] / model.interval_m - np.arange(intervals)
     return flat.reshape(wells, intervals)[well] * np.clip(passed, 0.0, 1.0)
 
@@ -142,7 +142,7 @@ def _bed_variance(
     std, measured = _measured(model, columns, integrals)
     start = np.flatnonzero(_first(number, columns.slabs.layer))
     within = np.add.reduceat(std * measured, start)
-    return np.bincount(number[start], within**2, count)
+    return np.bincount(number[start], within**2, count).astype(float, copy=False)
 
 
 def _first(*keys: Whole) -> NDArray[np.bool_]:

@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -69,6 +70,7 @@ class RockModel:
     """All that is known of the rock of n wells; ``deepest_m`` (n,): where the columns end.
 
     Groups of the columns are the m lithologies, then measured layers, then the rock below.
+    ``law_strength``: power on k(T) / k(25 degC).
     """
 
     lithologies: Lithologies
@@ -78,11 +80,12 @@ class RockModel:
     deepest_m: Array
     interval_m: float
     with_temperature: bool = True
+    law_strength: float = 1.0
 
     @property
     def step_m(self) -> float:
         """Thickness of the slabs: a whole number of them makes an interval."""
-        return self.interval_m / np.ceil(self.interval_m / LARGEST_STEP_M)
+        return float(self.interval_m / np.ceil(self.interval_m / LARGEST_STEP_M))
 
     @property
     def rocks(self) -> int:
@@ -104,7 +107,18 @@ class RockModel:
         )
         bed = np.where(slabs.layer >= 0, order[slabs.layer] if len(order) else -1, -1)
         slabs = Slabs(slabs.start, slabs.well, slabs.top_m, slabs.base_m, bed)
-        return Columns(slabs, self._parts(slabs), self.rocks + 2, self.with_temperature)
+        return Columns(
+            slabs, self._parts(slabs), self.rocks + 2, self.with_temperature, self.law_strength
+        )
+
+    def with_law_strength(self, factor: float) -> RockModel:
+        """Return the model with conductivity falling more or less with temperature."""
+        return replace(self, law_strength=factor)
+
+    def with_porosity(self, factor: float) -> RockModel:
+        """Return the model with the catalogue's porosities higher or lower by a factor."""
+        porosity = np.minimum(self.lithologies.porosity_surface * factor, 0.95)
+        return replace(self, lithologies=replace(self.lithologies, porosity_surface=porosity))
 
     def kind(self, slabs: Slabs) -> Whole:
         """Return what each slab rests on: place in ``ORIGINS``."""
@@ -138,7 +152,7 @@ class RockModel:
 
     def _catalogue(
         self, slabs: Slabs, slab: Whole, lithology: Whole, share: Array
-    ) -> tuple[NDArray, ...]:
+    ) -> tuple[NDArray[Any], ...]:
         rock = self.lithologies
         return (
             slab,
@@ -155,7 +169,7 @@ class RockModel:
             lithology,
         )
 
-    def _own(self, slabs: Slabs, slab: Whole) -> tuple[NDArray, ...]:
+    def _own(self, slabs: Slabs, slab: Whole) -> tuple[NDArray[Any], ...]:
         """Parts of the wells' own layers: what is measured goes before the catalogue."""
         beds, bed = self.beds, slabs.layer[slab]
         _, share, k, phi, law, heat, group = self._catalogue(
@@ -175,7 +189,7 @@ class RockModel:
             np.where(measured, self.rocks, group),
         )
 
-    def _below(self, slab: Whole) -> tuple[NDArray, ...]:
+    def _below(self, slab: Whole) -> tuple[NDArray[Any], ...]:
         one = np.ones(len(slab))
         return (
             slab,

@@ -127,11 +127,11 @@ def second_pass(
     """Return resistances by row, and the structure by well and interval, as arrays by name."""
     model, count = passes.model, len(passes.readings.well)
     groups = model.rocks + 2
-    rows = {
+    rows: dict[str, Array] = {
         "resistance": np.zeros((count, groups)),
         "radiogenic": np.zeros((count, groups)),
         "variance": np.zeros(count),
-        "origin": np.zeros(count, np.int64),
+        "origin": np.zeros(count),
     }
     points = []
     for block in passes.run(np.arange(len(flow)), flow):

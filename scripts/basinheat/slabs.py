@@ -102,7 +102,9 @@ def cut(
     return Slabs(start, slab_well, depth[:-1][here], depth[1:][here], layer)
 
 
-def overlapping(well: Whole, top_m: Array, base_m: Array, tolerance_m: float = 0.01) -> NDArray:
+def overlapping(
+    well: Whole, top_m: Array, base_m: Array, tolerance_m: float = 0.01
+) -> NDArray[np.bool_]:
     """Find the layers that must go so that no two of a well overlap; the upper one stays.
 
     Parameters

@@ -23,7 +23,6 @@ GROUP_M = 1000.0  # intervals of a kilometre share one covariance: a quarter of 
 CARRIED = ["heat_production_uw_m3", "reference_temperature_degc", "temperature_slope_per_k"]
 BELOW_SLOPE_PER_K = -0.0009  # Vosteen & Schellschmidt (2003), sediments, k 3 W/(m K), near 100 degC
 BELOW_REFERENCE_DEGC = 25.0
-WEIGHTS_AT_ONCE = 4_000_000  # cells x wells: 32 MB, whatever the grid
 
 
 def fit_structure(
@@ -227,10 +226,8 @@ def _krige_interval(
         frame["value_std"].to_numpy() ** 2,
     ).solve(frame["value"].to_numpy())
     prediction = engine.predict(xy)
-    riding = frame[[*CARRIED, *names]].to_numpy()
-    size = max(1, WEIGHTS_AT_ONCE // len(frame))
-    blocks = [engine.weights(xy[i : i + size]) @ riding for i in range(0, len(xy), size)]
-    values = np.column_stack([prediction.mean, np.concatenate(blocks)])
+    carried = engine.carry(frame[[*CARRIED, *names]].to_numpy(), xy)
+    values = np.column_stack([prediction.mean, carried])
     values[:, 1] = np.maximum(values[:, 1], 0.0)
     return values, prediction.variance
 

@@ -43,6 +43,19 @@ _EXAMPLES = {
     "": "percent, or no unit",
 }
 
+# The usual ones, exact by definition: a job of a small run need not load the library of units.
+_USUAL = {
+    ("ft", "m"): (0.3048, 0.0),
+    ("km", "m"): (1000.0, 0.0),
+    ("in", "m"): (0.0254, 0.0),
+    ("mm", "m"): (0.001, 0.0),
+    ("cm", "m"): (0.01, 0.0),
+    ("degF", "degC"): (1.0 / 1.8, -32.0 / 1.8),
+    ("K", "degC"): (1.0, -273.15),
+    ("min", "h"): (1.0 / 60.0, 0.0),
+    ("d", "h"): (24.0, 0.0),
+}
+
 
 def conversion(spelling: str, unit: str) -> tuple[float, float]:
     """Return what turns numbers in one unit into another: ``number * scale + offset``.
@@ -77,6 +90,8 @@ def conversion(spelling: str, unit: str) -> tuple[float, float]:
     """
     if spelling == unit:
         return 1.0, 0.0
+    if (spelling, unit) in _USUAL:
+        return _USUAL[spelling, unit]
     try:
         same = same_dimension(spelling, unit)
     except ValueError:

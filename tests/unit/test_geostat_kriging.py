@@ -312,3 +312,11 @@ def test_pykrige_refuses_what_it_cannot_do():
         PyKrigeKriging(xy, covariance)
     with pytest.raises(UserError, match="drift none or linear"):
         PyKrigeKriging(xy, covariance, trend=[1.0, 2.0, 3.0])
+
+
+def test_columns_carried_ride_on_the_weights():
+    rng = np.random.default_rng(11)
+    xy, places = rng.uniform(0, 1e5, (40, 2)), rng.uniform(0, 1e5, (7, 2))
+    engine = GlobalKriging(xy, Covariance("matern15", 4.0, 5e4, 0.3), rng.uniform(0.1, 1, 40))
+    columns = rng.normal(size=(40, 3))
+    assert engine.carry(columns, places) == pytest.approx(engine.weights(places) @ columns)

@@ -12,7 +12,7 @@ LIBRARY = {
     "draw.py": "import lib.pictures\n",
     "lib/__init__.py": '"""Library."""\n',
     "lib/stages/__init__.py": "",
-    "lib/stages/heat.py": '"""Heat."""\nfrom lib.numbers import double\n\n\ndef run():\n    double(1)\n',
+    "lib/stages/heat.py": "from lib.numbers import double\n\n\ndef run():\n    double(1)\n",
     "lib/numbers.py": "def double(x):\n    return 2 * x\n",
     "lib/pictures.py": "def draw():\n    from lib import lazy\n\n    lazy.draw()\n",
     "lib/lazy.py": "COLOUR = 'red'\n",
@@ -45,7 +45,9 @@ def test_the_closure_holds_what_is_imported_and_the_parents(scripts):
         "lib/stages/__init__.py",
         "lib/stages/heat.py",
     ]
-    assert "lib/lazy.py" in provenance.imported("draw.py", scripts), "imports inside functions count"
+    assert "lib/lazy.py" in provenance.imported("draw.py", scripts), (
+        "imports inside functions count"
+    )
 
 
 def test_an_edit_changes_the_scripts_that_import_it_and_no_other(scripts):

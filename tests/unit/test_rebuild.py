@@ -15,7 +15,7 @@ from basinheat.rebuild import (
 from scipy.integrate import solve_ivp
 
 EDGES = np.arange(0.0, 4001.0, 250.0)
-NONE = Sources(np.zeros(1), np.zeros((1, 1)), np.zeros(1), np.zeros(0, int))
+NONE = Sources(np.zeros(1), np.zeros((1, 1)), np.zeros(1), np.zeros(1), np.zeros(0, int))
 
 
 def structure(n_cells=1, slope=0.0, heat=1.0, k=2.5, std=0.0, sources=0):
@@ -56,17 +56,18 @@ def test_conductivity_that_falls_with_temperature_agrees_with_an_ode_solver():
 
 def test_variance_agrees_with_sampling_the_column():
     rng = np.random.default_rng(3)
-    n, m = 40_000, 3
+    n, m = 40_000, 4
     root = rng.normal(0, 1, (m + 1, m + 1)) * 0.5
     joint = root @ root.T + 0.1 * np.eye(m + 1)
     joint[0] *= 5.0  # heat flow varies by mW/m2, amplitudes by about 1
     joint[:, 0] *= 5.0
-    shift = np.array([0.7, 0.0, 0.0])
+    shift = np.array([0.7, 0.0, 0.0, 0.0])
+    share = np.array([0.0, 0.0, 0.0, 0.3])
     rock = np.array([1, 2])
     base = structure(slope=-1e-3, std=0.08, sources=2)
     base = replace(base, loadings=rng.uniform(0, 0.1, base.loadings.shape))
     heat_flow = HeatFlow(np.array([65.0]), joint[:1, 0], joint[:1, 1:])
-    sources = Sources(np.array([0.3, -0.2, 0.4]), joint[1:, 1:], shift, rock)
+    sources = Sources(np.array([0.3, -0.2, 0.4, 0.1]), joint[1:, 1:], shift, share, rock)
     columns = rebuild_columns(np.array([10.0]), np.array([0.5]), heat_flow, base, sources)
 
     draw = rng.multivariate_normal(np.zeros(m + 1), joint, n)
@@ -80,7 +81,9 @@ def test_variance_agrees_with_sampling_the_column():
         np.zeros(n),
         flow(65.0 + draw[:, 0]),
         replace(
-            structure(n, slope=-1e-3), ln_conductivity=ln_k
+            structure(n, slope=-1e-3),
+            ln_conductivity=ln_k,
+            heat_production=np.tile(1.0 + 0.3 * amplitude[:, 3:], len(EDGES) - 1),
         ),
         NONE,
     )

@@ -63,7 +63,11 @@ def test_an_empty_section_means_its_defaults(folder):
 
 def test_strings_from_the_command_line_become_numbers(folder):
     settings = load(folder, seed="3", maps={"cell_size_m": "2000", "depths_m": ["500"]})["base"]
-    assert (settings.seed, settings.maps.cell_size_m, settings.maps.depths_m) == (3, 2000.0, [500.0])
+    assert (settings.seed, settings.maps.cell_size_m, settings.maps.depths_m) == (
+        3,
+        2000.0,
+        [500.0],
+    )
 
 
 def test_a_scenario_merges_mappings_and_replaces_lists(folder):
@@ -90,13 +94,17 @@ def test_a_scenario_may_take_another_surface_model(folder):
 
 @pytest.mark.parametrize("section", sorted(set(Settings.model_fields) - set(OVERLAID)))
 def test_a_scenario_changes_nothing_that_all_share(folder, section):
-    with pytest.raises(UserError, match=rf"scenarios\.other\.{section}: a scenario may change only"):
+    with pytest.raises(
+        UserError, match=rf"scenarios\.other\.{section}: a scenario may change only"
+    ):
         load(folder, scenarios={"other": {section: {}}})
 
 
 def test_a_fault_of_base_is_not_told_again_for_each_scenario(folder):
     with pytest.raises(UserError) as caught:
-        load(folder, gradient={"reference_depth_m": -1}, scenarios={"a": {"heat_flow": {}}, "b": {}})
+        load(
+            folder, gradient={"reference_depth_m": -1}, scenarios={"a": {"heat_flow": {}}, "b": {}}
+        )
     assert caught.value.faults == ["gradient.reference_depth_m: must be positive (got -1)"]
 
 

@@ -35,6 +35,7 @@ GOOD = {
         ],
     },
 }
+COMMAND = (sys.executable, "-m", "snakemake", "-s", str(ROOT / "Snakefile"), "--cores", "1")
 WELLS, READINGS = ("inputs", "wells", 0), ("inputs", "readings", 0)
 
 # Where in the config, what is put there, and what the line must say.
@@ -70,7 +71,9 @@ FAULTS = {
     ),
     "twice": (("maps",), {"depths_m": [500, 500.0]}, "maps.depths_m: each value once"),
     "deeper than the model": (
-        ("maps",), {"depths_m": [9000]}, "maps.deepest_m: must not be above the deepest of depths_m",
+        ("maps",),
+        {"depths_m": [9000]},
+        "maps.deepest_m: must reach the deepest of depths_m",
     ),
     "no model of the surface": (
         ("surface_temperature",), {"std_k": 1}, "surface_temperature.model: is missing",
@@ -130,7 +133,9 @@ FAULTS = {
         "inputs.readings[0].columns: temperature is missing (temperature as read)",
     ),
     "not a unit": (
-        (*READINGS, "units", "depth"), "fete", 'inputs.readings[0].units.depth: "fete" is not a unit',
+        (*READINGS, "units", "depth"),
+        "fete",
+        'inputs.readings[0].units.depth: "fete" is not a unit',
     ),
     "a unit of something else": (
         (*READINGS, "units", "depth"),
@@ -210,8 +215,7 @@ def run(folder, *arguments):
     """Run snakemake on the project from a folder, with the default profile."""
     profile = str(ROOT / "workflow" / "profiles" / "default")
     return subprocess.run(
-        [sys.executable, "-m", "snakemake", "--snakefile", ROOT / "Snakefile", "--cores", "1"]
-        + list(arguments),
+        [*COMMAND, *arguments],
         cwd=folder,
         env={**os.environ, "SNAKEMAKE_PROFILE": profile},
         capture_output=True,

@@ -21,9 +21,16 @@ rule write_rasters:
         runtime=20,
     params:
         settings=lambda wildcards: {
-            key: value
-            for key, value in SECTIONS[wildcards.scenario].items()
-            if key not in ("validation", "seed")
+            key: SECTIONS[wildcards.scenario][key]
+            for key in (
+                "run",
+                "crs",
+                "inputs",
+                "correction",
+                "gradient",
+                "maps",
+                "credits",
+            )
         },
         code=code_digest("write_rasters.py"),
     message:
@@ -56,7 +63,18 @@ rule write_geopackage:
         mem_mb=lambda wildcards, input: 2000 + 50 * int(input.size_mb),
         runtime=20,
     params:
-        settings=lambda wildcards: SECTIONS[wildcards.scenario],
+        settings=lambda wildcards: {
+            key: SECTIONS[wildcards.scenario][key]
+            for key in (
+                "run",
+                "crs",
+                "inputs",
+                "correction",
+                "gradient",
+                "maps",
+                "credits",
+            )
+        },
         code=code_digest("write_geopackage.py"),
     message:
         "Writing the GeoPackage ({wildcards.scenario})"
@@ -71,8 +89,8 @@ rule write_report:
         wells="results/{run}/{scenario}/tables/wells.parquet",
         readings="results/{run}/wells/readings.parquet",
         layers="results/{run}/wells/layers.parquet",
-        rejected=[
-            "results/{run}/wells/rejected.parquet",
+        rejected="results/{run}/wells/rejected.parquet",
+        rejected_later=[
             "results/{run}/{scenario}/tables/rejected.parquet",
             "results/{run}/{scenario}/tables/rejected_layers.parquet",
         ],
@@ -86,7 +104,11 @@ rule write_report:
         scores="results/{run}/{scenario}/tables/crossval/scores.json",
         heat_flow_model="results/{run}/{scenario}/variograms/heat_flow.json",
         structure_model="results/{run}/{scenario}/variograms/conductivity.json",
-        template=f"{LIBRARY}/report/templates/report.html.j2",
+        catalogue=lambda wildcards: SECTIONS[wildcards.scenario]["conductivity"][
+            "catalogue"
+        ]
+        or f"{LIBRARY}/conductivity/catalogue.csv",
+        templates=data_files("report/templates"),
     output:
         report="results/{run}/{scenario}/delivery/report.html",
     log:

@@ -44,7 +44,7 @@ rule estimate_resistances:
         catalogue=lambda wildcards: SECTIONS[wildcards.scenario]["conductivity"][
             "catalogue"
         ]
-        or f"{LIBRARY}/conductivity/catalogue.csv",
+        or data_files("conductivity"),
     output:
         resistances="results/{run}/{scenario}/tables/resistances.parquet",
         structure="results/{run}/{scenario}/tables/map_points/conductivity.parquet",

@@ -22,6 +22,9 @@ _FARTHEST = 6.0
 # Beyond this share of the misfits that chance allows, readings contradict each other.
 _CHANCE = 0.999
 _MOST_SETS = 5000
+# Far wider than any basin's law: what contradicts even this is left out before anything is
+# learned, or a few gross errors would bend the law to themselves.
+_SCREEN = CoolingLaw(offset_k=0.0, slope=0.35, scatter=0.25, noise=2.0)
 
 
 @dataclass(frozen=True)
@@ -82,11 +85,10 @@ def learn_law(blocks: list[Block], rise_ref_k: Floats, typical_k: float) -> Lear
         Posterior mode under weak priors, so that ten sets, or none, do as well. Sets whose
         readings contradict each other are left out, and the law is learned again.
     """
-    total = sum(block.index.size for block in blocks)
-    position = _mode(blocks, rise_ref_k, typical_k, np.zeros(4))
-    if total:
-        law = _law(position, typical_k)
-        blocks = [_consistent(block, rise_ref_k, law) for block in blocks]
+    total, position = sum(block.index.size for block in blocks), np.zeros(4)
+    for law in (_SCREEN, None):
+        consistent_with = law or _law(position, typical_k)
+        blocks = [_consistent(block, rise_ref_k, consistent_with) for block in blocks]
         position = _mode(blocks, rise_ref_k, typical_k, position)
     taught = np.sort(np.concatenate([np.zeros(0, np.int64), *(block.index for block in blocks)]))
     spread = _level_std(position, lambda p: _objective(p, blocks, rise_ref_k, typical_k))

@@ -207,6 +207,24 @@ class GlobalKriging:
         white = self._factor.remove_drift(white) + self._factor.basis @ drift
         return self._factor.unwhiten(white).T
 
+    @one_blas_thread
+    def carry(self, columns: ArrayLike, xy0: ArrayLike, block: int | None = None) -> Array:
+        """Return further columns of the data, (n, r), carried to places on the same weights.
+
+        What rides with a value (its loadings, say) must be interpolated as the value is; the
+        weights do not depend on the values, and dual weights make each column one product.
+        """
+        places = as_places(xy0, "a cell")
+        drift = self._drift.matrix(places, None)
+        white = self._factor.whiten(np.asfortranarray(columns, float))
+        beta = self._factor.coefficients(white)
+        duals = self._factor.unwhiten(self._factor.remove_drift(white))
+        carried = np.empty((len(places), white.shape[1]))
+        for rows in self._blocks(len(places), block):
+            carried[rows] = self._covariance.between(places[rows], self._xy) @ duals
+            carried[rows] += drift[rows] @ beta
+        return carried
+
     def _need_values(self) -> Array:
         if self._values is None:
             raise ValueError("call solve(values) first")

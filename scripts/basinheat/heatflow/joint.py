@@ -36,8 +36,10 @@ class Basin:
     ``radiogenic_fixed`` (n,) of measured rock, ``loadings`` (n, m) K of the temperature sources,
     ``std`` (n,) K independent, ``well_std`` (n,) K, ``surface_std`` (n,) K own part of the surface
     temperature, ``resistance_std`` (n,) m2 K/mW, ``scale_class`` (n,) int. Wells: ``xy`` (w, 2) m.
-    ``ln_std`` (k,) sigma of ln k of each lithology; ``surface_shift`` (m,) K: change of the surface
-    temperature per unit amplitude of each temperature source.
+    ``change`` (n, v) m2 K/mW: of resistance per unit amplitude of v rock sources. ``ln_std`` (k,)
+    sigma of ln k of each lithology; ``surface_shift`` (m,) K: change of the surface temperature per
+    unit amplitude of each temperature source; ``production_std``: sigma of the level of heat
+    production. Amplitudes are ordered m, k, v, and heat production.
     """
 
     well: Ints
@@ -46,6 +48,7 @@ class Basin:
     resistance: Floats
     radiogenic: Floats
     resistance_fixed: Floats
+    change: Floats
     radiogenic_fixed: Floats
     loadings: Floats
     std: Floats
@@ -56,6 +59,7 @@ class Basin:
     xy: Floats
     ln_std: Floats
     surface_shift: Floats
+    production_std: float
 
     def of_wells(self, wells: Ints) -> Basin:
         """Return the rows of some wells, renumbered."""
@@ -65,7 +69,7 @@ class Basin:
         per_row = {
             name: getattr(self, name)[rows]
             for name in self.__dataclass_fields__
-            if name not in ("xy", "ln_std", "surface_shift")
+            if name not in ("xy", "ln_std", "surface_shift", "production_std")
         }
         per_row["well"] = number[per_row["well"]]
         return replace(self, xy=self.xy[wells], **per_row)
@@ -86,21 +90,30 @@ class Joint:
     regional: float
 
 
-def column_of(basin: Basin, ln_k: Floats, regional: float, scales: Floats) -> Column:
-    """Build the linear model of all rows for given ln k amplitudes and one regional heat flow.
+def column_of(basin: Basin, rock: Floats, regional: float, scales: Floats) -> Column:
+    """Build the linear model of all rows about given rock amplitudes, (k + v,).
 
     Loadings use one regional heat flow (mW/m2) for all wells: with each well's own, ln k would
     explain the map away and pull it low.
     """
+    ln_k, rest = np.split(rock, [len(basin.ln_std)])
     change = np.exp(-basin.ln_std * ln_k)
     resistance, radiogenic = basin.resistance * change, basin.radiogenic * change
+    below = radiogenic.sum(1) + basin.radiogenic_fixed
     conductivity = -(regional * resistance - radiogenic) * basin.ln_std
     scale = scales[basin.scale_class]
     return Column(
         well=basin.well,
-        resistance=resistance.sum(1) + basin.resistance_fixed,
-        excess=basin.temperature - basin.surface + radiogenic.sum(1) + basin.radiogenic_fixed,
-        loadings=np.column_stack([basin.loadings + basin.surface_shift, conductivity]),
+        resistance=resistance.sum(1) + basin.resistance_fixed + basin.change @ rest,
+        excess=basin.temperature - basin.surface + below,
+        loadings=np.column_stack(
+            [
+                basin.loadings + basin.surface_shift,
+                conductivity,
+                regional * basin.change,
+                -basin.production_std * below,
+            ]
+        ),
         variance=basin.std**2 * scale,
         common=np.column_stack(
             [
@@ -137,19 +150,20 @@ def fit_joint(
     Returns
     -------
     Joint
-        Posterior of the amplitudes given everything; ln k linearised anew in each turn.
+        Posterior of the amplitudes given everything; rock linearised anew in each turn.
     """
-    n_temperature, n_ln = basin.loadings.shape[1], len(basin.ln_std)
+    n_temperature, n_rock = basin.loadings.shape[1], len(basin.ln_std) + basin.change.shape[1]
+    place = slice(n_temperature, n_temperature + n_rock)
     sample = basin.of_wells(spread(basin.xy, WELLS_FITTED))
     search = _Search(sample, models, pinned, regional, trend)
-    ln_k = np.zeros(n_ln)
+    rock = np.zeros(n_rock)
     for turn in range(TURNS):
-        prior_mean = np.concatenate([np.zeros(n_temperature), -ln_k])
+        offset = np.concatenate([np.zeros(n_temperature), rock, [0.0]])
         if turn < TURNS - 1:
-            search.run(ln_k, regional, prior_mean)
+            search.run(rock, regional, -offset)
         covariance, scales = search.covariance(), search.scales()
-        reduced = reduce_wells(column_of(basin, ln_k, regional, scales))
-        mean_within, covariance_within, _ = amplitudes_within_wells(reduced, prior_mean)
+        reduced = reduce_wells(column_of(basin, rock, regional, scales))
+        mean_within, covariance_within, _ = amplitudes_within_wells(reduced, -offset)
         engine = GlobalKriging(
             basin.xy,
             covariance,
@@ -160,9 +174,8 @@ def fit_joint(
             prior_covariance=covariance_within,
         ).solve(reduced.heat_flow)
         mean, posterior = engine.amplitudes()
-        offset = np.concatenate([np.zeros(n_temperature), ln_k])
         regional = float(np.mean(reduced.heat_flow - reduced.loadings @ mean))
-        ln_k = ln_k + mean[n_temperature:]
+        rock = rock + mean[place]
     return Joint(
         covariance=covariance,
         scales=scales,
@@ -221,7 +234,7 @@ class _Search:
         self.range_guess = self.at[1]
         self.model = models[-1]
 
-    def run(self, ln_k: Floats, regional: float, prior_mean: Floats) -> None:
+    def run(self, rock: Floats, regional: float, prior_mean: Floats) -> None:
         """Search all models from where the last turn ended and keep the likeliest."""
         if self.pinned is not None and not len(self.free):
             return
@@ -230,7 +243,7 @@ class _Search:
             result = minimize(
                 self._deviance,
                 self.at,
-                args=(model, ln_k, regional, prior_mean),
+                args=(model, rock, regional, prior_mean),
                 method="Nelder-Mead",
                 # the default simplex hardly moves a parameter that starts at 0
                 options={
@@ -259,10 +272,10 @@ class _Search:
         return scales
 
     def _deviance(
-        self, at: Floats, model: str, ln_k: Floats, regional: float, prior_mean: Floats
+        self, at: Floats, model: str, rock: Floats, regional: float, prior_mean: Floats
     ) -> float:
         at = np.clip(at, self.low, self.high)
-        reduced = reduce_wells(column_of(self.basin, ln_k, regional, self.scales(at)))
+        reduced = reduce_wells(column_of(self.basin, rock, regional, self.scales(at)))
         mean, spread_, within = amplitudes_within_wells(reduced, prior_mean)
         if self.pinned is None:
             sill, reach, nugget = np.exp(at[:3])

@@ -18,6 +18,7 @@ from basinheat.tables import Temperatures
 log = logging.getLogger(__name__)
 
 SURFACE = "surface_temperature"
+LITHOLOGY, ROCK, PRODUCTION = "conductivity:", "rock:", "rock:heat_production"
 FEWEST_WELLS = 5
 
 
@@ -53,7 +54,7 @@ def fit(
     estimates, resistances : DataFrame
         The tables of these names, row by row the same temperatures.
     sources : DataFrame
-        Sources of the correction and of the conductivities: source, prior_std, unit.
+        Sources of the correction and of the rock: source, prior_std, unit.
     wells : DataFrame
         Wells with surface temperatures.
     models : tuple of str
@@ -117,18 +118,25 @@ def fit(
 
 
 def _with_surface(sources: pd.DataFrame, std_k: float) -> pd.DataFrame:
-    """Put temperature sources first, the surface among them, then ln k of the lithologies."""
-    sources = sources[sources["source"] != SURFACE]
-    rock = sources["source"].str.startswith("conductivity:")
+    """Order the sources: of temperature with the surface, ln k, other rock, heat production."""
     surface = pd.DataFrame({"source": [SURFACE], "prior_std": [std_k], "unit": ["K"]})
-    return pd.concat(
-        [sources[~rock].sort_values("source"), surface, sources[rock].sort_values("source")],
-        ignore_index=True,
+    sources = pd.concat([sources[sources["source"] != SURFACE], surface])
+    name = sources["source"]
+    rank = np.select(
+        [name == PRODUCTION, name.str.startswith(ROCK), name.str.startswith(LITHOLOGY)],
+        [3, 2, 1],
+        0,
     )
+    order = np.lexsort([name.to_numpy(str), rank])
+    return sources.iloc[order].reset_index(drop=True)
 
 
-def _is_rock(sources: pd.DataFrame) -> np.ndarray:
-    return sources["source"].str.startswith("conductivity:").to_numpy()
+def _starts(sources: pd.DataFrame, prefix: str) -> np.ndarray:
+    return sources["source"].str.startswith(prefix).to_numpy()
+
+
+def _of_temperature(sources: pd.DataFrame) -> np.ndarray:
+    return ~(_starts(sources, LITHOLOGY) | _starts(sources, ROCK))
 
 
 def _loadings(estimates: pd.DataFrame, names: pd.Series) -> np.ndarray:
@@ -143,10 +151,12 @@ def _basin(
     """Arrange the tables as the arrays of the fit."""
     well = pd.Index(wells["well"]).get_indexer(used["well"])
     at = wells.iloc[well]
-    rocks = sources["source"][_is_rock(sources)].str.removeprefix("conductivity:").tolist()
+    lithology, of_temperature = _starts(sources, LITHOLOGY), _of_temperature(sources)
+    rocks = sources["source"][lithology].str.removeprefix(LITHOLOGY).tolist()
+    changes = [f"change_{s}" for s in sources["source"][_starts(sources, ROCK)] if s != PRODUCTION]
     resistance = rock[[f"resistance_{name}" for name in rocks]].to_numpy() * 1e-3
     radiogenic = rock[[f"radiogenic_{name}" for name in rocks]].to_numpy()
-    temperature_sources = sources[~_is_rock(sources)]
+    temperature_sources = sources[of_temperature]
     classes, scale_class = np.unique(used["variance_class"].to_numpy(str), return_inverse=True)
     return Basin(
         well=well,
@@ -163,10 +173,12 @@ def _basin(
         resistance_std=rock["resistance_std_m2k_w"].to_numpy() * 1e-3,
         scale_class=scale_class,
         xy=wells[["easting_m", "northing_m"]].to_numpy(),
-        ln_std=sources["prior_std"].to_numpy()[_is_rock(sources)],
+        change=rock[changes].to_numpy() * 1e-3,
+        ln_std=sources["prior_std"].to_numpy()[lithology],
         surface_shift=np.where(
             temperature_sources["source"] == SURFACE, temperature_sources["prior_std"], 0.0
         ),
+        production_std=float(sources["prior_std"][sources["source"] == PRODUCTION].sum()),
     ), classes.tolist()
 
 
@@ -188,10 +200,10 @@ def _temperatures(
     joint: Joint, estimates: pd.DataFrame, sources: pd.DataFrame, classes: list[str]
 ) -> pd.DataFrame:
     """Take the posterior mean of the sources out of the estimates, held-out wells included."""
-    is_rock = _is_rock(sources)
-    loadings = _loadings(estimates, sources["source"][~is_rock])
-    posterior = joint.posterior[np.ix_(~is_rock, ~is_rock)]
-    shift = loadings @ joint.mean[~is_rock]
+    of_temperature = _of_temperature(sources)
+    loadings = _loadings(estimates, sources["source"][of_temperature])
+    posterior = joint.posterior[np.ix_(of_temperature, of_temperature)]
+    shift = loadings @ joint.mean[of_temperature]
     scale = dict(zip(classes, np.sqrt(joint.scales), strict=True))
     factor = estimates["variance_class"].map(scale).fillna(1.0).to_numpy(float)
     final = estimates.assign(
@@ -212,24 +224,16 @@ def _heat_flow(
     wells: pd.DataFrame,
 ) -> pd.DataFrame:
     """Heat flow of each well, sources at their posterior mean."""
-    reduced, is_rock = joint.reduced, _is_rock(sources)
+    reduced = joint.reduced
     left = joint.mean - joint.offset
     shared = np.einsum("ij,jk,ik->i", reduced.loadings, joint.posterior, reduced.loadings)
-    ln_std = sources["prior_std"].to_numpy()[is_rock]
-    names = sources["source"][is_rock].str.removeprefix("conductivity:")
-    parts = rock[[f"resistance_{name}" for name in names]].to_numpy()
-    changed = parts * np.exp(-ln_std * joint.mean[is_rock])
-    resistance = rock["resistance_m2k_w"].to_numpy() - parts.sum(1) + changed.sum(1)
-    covariance = joint.posterior[np.ix_(is_rock, is_rock)]
-    share = changed * ln_std / resistance[:, None]
-    ln_var = np.einsum("ij,jk,ik->i", share, covariance, share)
-    ln_var += (rock["resistance_std_m2k_w"].to_numpy() / resistance) ** 2
+    resistance, ln_std = _resistance(joint, rock, sources)
     rows = pd.DataFrame(
         {
             "well": used["well"],
             "depth_m": used["depth_m"],
             "conductivity_w_mk": used["depth_m"] / resistance,
-            "ln_std": np.sqrt(ln_var),
+            "ln_std": ln_std,
             "origin": rock["origin"],
         }
     )
@@ -251,6 +255,26 @@ def _heat_flow(
             "effects": "none",
         }
     )
+
+
+def _resistance(
+    joint: Joint, rock: pd.DataFrame, sources: pd.DataFrame
+) -> tuple[np.ndarray, np.ndarray]:
+    """Resistance with the rock sources at their posterior mean, and sigma of its logarithm."""
+    lithology = _starts(sources, LITHOLOGY)
+    other = _starts(sources, ROCK) & (sources["source"] != PRODUCTION).to_numpy()
+    names = sources["source"].str.removeprefix(LITHOLOGY)
+    ln_std = sources["prior_std"].to_numpy()[lithology]
+    parts = rock[[f"resistance_{name}" for name in names[lithology]]].to_numpy()
+    change = rock[[f"change_{name}" for name in names[other]]].to_numpy()
+    changed = parts * np.exp(-ln_std * joint.mean[lithology])
+    resistance = rock["resistance_m2k_w"].to_numpy() + (changed - parts).sum(1)
+    resistance = resistance + change @ joint.mean[other]
+    share = np.hstack([-changed * ln_std, change]) / resistance[:, None]
+    kept = np.flatnonzero(lithology).tolist() + np.flatnonzero(other).tolist()
+    variance = np.einsum("ij,jk,ik->i", share, joint.posterior[np.ix_(kept, kept)], share)
+    variance += (rock["resistance_std_m2k_w"].to_numpy() / resistance) ** 2
+    return resistance, np.sqrt(variance)
 
 
 def _map_points(joint: Joint, sources: pd.DataFrame, wells: pd.DataFrame) -> pd.DataFrame:

@@ -7,7 +7,6 @@ import io
 import logging
 from collections.abc import Iterator
 from itertools import islice
-from operator import itemgetter
 from pathlib import Path
 
 import numpy as np
@@ -21,6 +20,7 @@ from basinheat.settings.inputs import TableFile
 _log = logging.getLogger(__name__)
 
 LONGEST_RECORD = 20  # lines; a quote that is never closed would swallow the rest of the file
+HEAD = 1_000_000  # bytes that surely hold the headers
 _BATCH = 100_000  # records turned into columns at a time: bounds the memory of small strings
 
 Broken = list[tuple[int, str, str, str]]
@@ -28,7 +28,7 @@ Broken = list[tuple[int, str, str, str]]
 
 def headers(path: str | Path, spec: TableFile) -> list[str]:
     """Return the headers of the file, in order."""
-    return _header(_lines(path, spec), path, spec)[0]
+    return _header(_lines(path, spec, HEAD), path, spec)[0]
 
 
 def read(path: str | Path, spec: TableFile, wanted: list[str]) -> RawTable:
@@ -51,26 +51,61 @@ def read(path: str | Path, spec: TableFile, wanted: list[str]) -> RawTable:
     -------
     RawTable
     """
-    broken: Broken = []
     text = _lines(path, spec)
     header, start = _header(text, path, spec)
     places = [_place(name, header, path) for name in wanted]
+    if _is_plain(text, start, spec.delimiter, len(header)):
+        return _split(text, start, spec.delimiter, dict(zip(wanted, places, strict=True)))
+    broken: Broken = []
     parts, lines = [], []
     good = _whole(_records(text, start, spec.delimiter, len(header), broken), len(header), broken)
     while batch := list(islice(good, _BATCH)):
-        picked = itemgetter(*places) if len(places) > 1 else lambda row: (row[places[0]],)
-        cells = list(zip(*(picked(row) for _, row in batch), strict=True))
+        cells = list(zip(*([row[place] for place in places] for _, row in batch), strict=True))
         parts.append(pd.DataFrame(dict(zip(wanted, cells, strict=True)), dtype="str"))
         lines.append(np.array([line for line, _ in batch], np.int64))
-    cells = pd.concat(parts, ignore_index=True) if parts else pd.DataFrame(columns=wanted, dtype="str")
+    cells = (
+        pd.concat(parts, ignore_index=True) if parts else pd.DataFrame(columns=wanted, dtype="str")
+    )
     return RawTable(cells, np.concatenate([np.empty(0, np.int64), *lines]), broken)
 
 
-def _lines(path: str | Path, spec: TableFile) -> list[str]:
-    """Return the lines of the file with their ends, whatever system wrote them."""
+def _is_plain(lines: list[str], start: int, delimiter: str, width: int) -> bool:
+    """Tell whether every line is a record of the right width: no quotes, no lines to judge."""
+    return width > 1 and all(
+        line.count(delimiter) == width - 1 and '"' not in line and line[0] != delimiter
+        for line in islice(lines, start, None)
+    )
+
+
+def _split(lines: list[str], start: int, delimiter: str, places: dict[str, int]) -> RawTable:
+    """Split lines that are records each: tens of times faster than one by one."""
+    import pyarrow as pa
+    from pyarrow import csv as arrow_csv
+
+    names = {place: name for name, place in places.items()}
+    width = lines[start].count(delimiter) + 1 if start < len(lines) else 0
+    columns = [names.get(place, f"_{place}") for place in range(width)]
+    if start == len(lines):
+        return RawTable(pd.DataFrame(columns=list(places), dtype="str"), np.empty(0, np.int64))
+    table = arrow_csv.read_csv(
+        pa.BufferReader("".join(lines[start:]).encode()),
+        read_options=arrow_csv.ReadOptions(column_names=columns, use_threads=False),
+        parse_options=arrow_csv.ParseOptions(delimiter=delimiter, quote_char=False),
+        convert_options=arrow_csv.ConvertOptions(
+            include_columns=list(places),
+            column_types=dict.fromkeys(places, pa.string()),
+            strings_can_be_null=False,
+        ),
+    )
+    cells = pd.DataFrame({name: pd.array(table[name], dtype="str") for name in places})
+    return RawTable(cells, np.arange(start + 1, len(lines) + 1, dtype=np.int64))
+
+
+def _lines(path: str | Path, spec: TableFile, size: int = -1) -> list[str]:
+    """Return the lines of the file, or of its first bytes, with their ends."""
     if len(spec.delimiter) != 1:
         raise UserError(f'{path}: delimiter "{spec.delimiter}" must be one character.')
-    return list(io.StringIO(read_text(path, spec.encoding), newline=""))
+    return list(io.StringIO(read_text(path, spec.encoding, size), newline=""))
 
 
 def _header(lines: list[str], path: str | Path, spec: TableFile) -> tuple[list[str], int]:
@@ -119,11 +154,10 @@ def _whole(
 ) -> Iterator[tuple[int, list[str]]]:
     """Yield line and cells of the records that have as many cells as the header."""
     for line, row in records:
-        if len(row) == width and any(row):
-            if any(map(str.strip, row)):
-                yield line, row
-        elif not any(map(str.strip, row)):
+        if not any(map(str.strip, row)):
             continue
+        if len(row) == width:
+            yield line, row
         elif len(row) > width and not any(map(str.strip, row[width:])):
             yield line, row[:width]
         else:

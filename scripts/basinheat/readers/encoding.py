@@ -14,7 +14,11 @@ _log = logging.getLogger(__name__)
 # central European or Cyrillic; well tables without UTF-8 come from these systems (common practice).
 _LIKELY = ["cp1252", "latin_1", "cp850", "mac_roman"]
 _SAMPLE = 200_000  # bytes of telling lines
-_MARKS = {codecs.BOM_UTF16_LE: "utf-16", codecs.BOM_UTF16_BE: "utf-16", codecs.BOM_UTF8: "utf-8-sig"}
+_MARKS = {
+    codecs.BOM_UTF16_LE: "utf-16",
+    codecs.BOM_UTF16_BE: "utf-16",
+    codecs.BOM_UTF8: "utf-8-sig",
+}
 
 
 def decode(data: bytes, encoding: str, name: str) -> str:
@@ -60,13 +64,17 @@ def decode(data: bytes, encoding: str, name: str) -> str:
     return data.decode(guess, errors="replace")
 
 
-def read_text(path: str | Path, encoding: str) -> str:
-    """Return the text of a file."""
+def read_text(path: str | Path, encoding: str, size: int = -1) -> str:
+    """Return the text of a file, or of its lines within the first bytes."""
     path = Path(path)
     try:
-        return decode(path.read_bytes(), encoding, path.name)
+        with path.open("rb") as file:
+            data = file.read(size)
     except OSError as error:
         raise UserError(f"{path}: cannot be read ({error.strerror}).") from error
+    if len(data) == size:
+        data = data[: data.rfind(b"\n") + 1] or data
+    return decode(data, encoding, path.name)
 
 
 def _guess(data: bytes) -> str:

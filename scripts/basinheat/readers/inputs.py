@@ -68,6 +68,10 @@ class InputTable:
         """Return the table with the rows of the mask only."""
         return replace(self, frame=self.frame[np.asarray(mask)].reset_index(drop=True))
 
+    def with_frame(self, frame: pd.DataFrame) -> InputTable:
+        """Return the table with other rows or columns."""
+        return replace(self, frame=frame)
+
     def header(self, name: str, specs: pd.Series) -> list[str]:
         """Return the header of a canonical column in the files of rows."""
         return [self.headers[spec].get(name, name) for spec in specs]
@@ -129,9 +133,7 @@ def source_name(path: str | Path, folder: str | Path) -> str:
     return os.path.basename(path)
 
 
-def _columns(
-    path: str, spec: TableFile, contract: Mapping[str, InputColumn]
-) -> dict[str, str]:
+def _columns(path: str, spec: TableFile, contract: Mapping[str, InputColumn]) -> dict[str, str]:
     """Return canonical name to header for what is read of a file."""
     present = headers(path, spec)
     if spec.columns:
@@ -142,15 +144,11 @@ def _columns(
     columns = {name: name for name in contract if name in present}
     absent = [n for n, column in contract.items() if column.required and n not in columns]
     if absent:
-        raise UserError(
-            f"{path}: there is no column {', '.join(absent)}. Map it under `columns`."
-        )
+        raise UserError(f"{path}: there is no column {', '.join(absent)}. Map it under `columns`.")
     return columns
 
 
-def _canonical(
-    raw: RawTable, columns: dict[str, str], spec: TableFile, table: str
-) -> pd.DataFrame:
+def _canonical(raw: RawTable, columns: dict[str, str], spec: TableFile, table: str) -> pd.DataFrame:
     """Return the cells as canonical columns; those that are not read are blank."""
     contract, rows = INPUT_COLUMNS[table], len(raw.lines)
     out: dict[str, object] = {}

@@ -52,7 +52,7 @@ def headers(path: str | Path, spec: TableFile) -> list[str]:
     return _module(path).headers(path, spec)
 
 
-def _module(path: str | Path):  # noqa: ANN202
+def _module(path: str | Path):
     """Return the reader for a file name; formats join here."""
     suffix = Path(path).suffix.lower()
     if suffix in (".parquet", ".xlsx", ".xls", ".gpkg", ".las"):
@@ -60,5 +60,3 @@ def _module(path: str | Path):  # noqa: ANN202
     from basinheat.readers import csv_text
 
     return csv_text
-
-

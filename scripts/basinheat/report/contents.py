@@ -7,13 +7,18 @@ from typing import Any
 
 import pandas as pd
 
+from basinheat.conductivity.catalogue import Catalogue
 from basinheat.delivery.metadata import About
 from basinheat.grid import Grid
 
 
 @dataclass(frozen=True)
 class Contents:
-    """Tables and records of one scenario, as loaded."""
+    """Tables and records of one scenario, as loaded.
+
+    ``rejected`` is the ledger of reading and screening, ``rejected_later`` that of the stages after
+    it: its rows stand in ``readings`` and ``layers`` too.
+    """
 
     about: About
     grid: Grid
@@ -22,6 +27,7 @@ class Contents:
     readings: pd.DataFrame
     layers: pd.DataFrame
     rejected: pd.DataFrame
+    rejected_later: pd.DataFrame
     temperatures: pd.DataFrame
     resistances: pd.DataFrame
     heat_flow: pd.DataFrame
@@ -32,5 +38,16 @@ class Contents:
     heat_flow_model: dict[str, Any]
     structure_model: dict[str, Any]
     recovery: dict[str, Any]
+    rocks: Catalogue
     settings: dict[str, Any]
     versions: dict[str, str]
+
+    @property
+    def depths_m(self) -> list[float]:
+        """Return the depths of the temperature maps, shallow to deep; m."""
+        return sorted(self.settings["maps"]["depths_m"])
+
+    @property
+    def holdout(self) -> list[str]:
+        """Return the wells that were kept out to judge the maps."""
+        return list(self.settings["validation"]["holdout"])

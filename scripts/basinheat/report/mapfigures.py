@@ -2,121 +2,236 @@
 
 from __future__ import annotations
 
-import re
-from dataclasses import dataclass
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
-from basinheat.delivery import style
-from basinheat.delivery.metadata import quantity
+from basinheat.delivery import contours, style
+from basinheat.delivery.metadata import Quantity, quantity
+from basinheat.grid import NEAREST_WELLS
+from basinheat.report import basis, captions
 from basinheat.report.contents import Contents
-from basinheat.report.draw import INK, as_data_uri, new_figure
+from basinheat.report.draw import INK, WIDTH, Panel, Picture, as_panel, new_figure
+
+if TYPE_CHECKING:
+    from matplotlib.figure import Figure
 
 KM = 1e-3
-BLANK = "#e6e9ec"
-
-
-@dataclass(frozen=True)
-class Picture:
-    """A picture of the page: name, caption and image as a data URI."""
-
-    name: str
-    caption: str
-    image: str
+BLANK, CROSSES = "#eceff1", "#aab3ba"
+PIXELS = 900  # of a map's longer side: more do not show
+_ANY_VALUE = 0.5
 
 
 def map_pictures(contents: Contents) -> list[Picture]:
     """Draw every mapped quantity beside its standard uncertainty."""
-    limits = style.limits(contents.maps, contents.about)
-    names = [
-        name
-        for name in contents.maps.columns
-        if f"{name}_std" in contents.maps and contents.maps[name].notna().any()
-    ]
-    names.sort(key=_order)
-    return [_pair(name, contents, limits) for name in names]
+    ends = style.limits(contents.maps, contents.about)
+    return [_pair(name, contents, ends) for name in basis.mapped(contents)]
 
 
-def _order(name: str) -> tuple[int, float]:
-    families = ["heat_flow", "gradient", "temperature", "isotherm"]
-    family = next(i for i, stem in enumerate(families) if name.startswith(stem))
-    number = re.search(r"-?\d+(\.\d+)?", name)
-    return family, float(number.group()) if number else 0.0
+def value_figure(name: str, contents: Contents, ends: dict[str, tuple[float, float]]) -> Figure:
+    """Draw one column of the maps.
 
-
-def _pair(name: str, contents: Contents, limits: dict[str, tuple[float, float]]) -> Picture:
-    figure = new_figure(10.4, 4.5)
-    axes = figure.subplots(1, 2, sharey=True)
-    for ax, column in zip(axes, (name, f"{name}_std"), strict=True):
-        what = quantity(column, contents.about)
-        values = contents.grid.array(contents.maps, contents.maps[column])
-        image = _show(ax, contents, values, what.family, limits.get(what.family))
-        _hatch(ax, contents, _doubtful(name, contents))
-        bar = figure.colorbar(image, ax=ax, shrink=0.86, pad=0.02)
-        bar.set_label(what.unit)
-        bar.outline.set_visible(False)
-        ax.set_title(what.title[0].upper() + what.title[1:] if column == name else
-                     "Standard uncertainty")
-        ax.set_xlabel("Easting (km)")
-    _wells(axes[0], contents)
-    axes[0].set_ylabel("Northing (km)")
-    return Picture(name, quantity(name, contents.about).label, as_data_uri(figure))
-
-
-def _show(
-    ax: Any, contents: Contents, values: np.ndarray, family: str, ends: tuple[float, float] | None
-) -> Any:
+    Parameters
+    ----------
+    name : str
+        Column: ``temperature_2000m``, ``temperature_2000m_std``, ...
+    contents : Contents
+        Of the report.
+    ends : dict
+        Family to the range of its colours (``style.limits``).
+    """
     import matplotlib as mpl
 
-    west, south, east, north = (edge * KM for edge in contents.grid.bounds)
-    low, high = ends or (None, None)
-    ax.set_facecolor(BLANK)
-    colours = mpl.colormaps[style.ramp(family)]
-    return ax.imshow(
-        np.ma.masked_invalid(values),
-        extent=(west, east, south, north),
-        cmap=colours,
-        vmin=low,
-        vmax=high,
-        interpolation="nearest",
-        zorder=1,
+    what = quantity(name, contents.about)
+    stem = name.removesuffix("_std")
+    figure, ax = _map(contents)
+    low, high = ends[what.family]
+    values = _thin(contents, contents.maps[name])
+    image = _paint(ax, contents, values, mpl.colormaps[style.ramp(what.family)], vmin=low, vmax=high)
+    _hatch(ax, contents, _thin(contents, basis.below_readings(stem, contents)) > _ANY_VALUE)
+    if what.is_value:
+        _contours(ax, contents, values, what, ends)
+        _wells(ax, contents)
+    bar = figure.colorbar(image, ax=ax, shrink=0.9, pad=0.02, aspect=28, extend="both")
+    bar.set_label("σ " + f"({what.unit})" if name != stem else f"{_symbol(what)} ({what.unit})")
+    bar.outline.set_visible(False)
+    title = quantity(stem, contents.about).title
+    ax.set_title(title if name == stem else f"σ: {title[0].lower()}{title[1:]}")
+    return figure
+
+
+def trust_picture(contents: Contents) -> Picture:
+    """Draw how deep readings go, and how far wells are."""
+    maps = contents.maps
+    deepest = max(maps["deepest_reading"].max(), 1.0)
+    edges = [0.0, *(depth for depth in contents.depths_m if depth < deepest)]
+    edges.append(float(np.ceil(deepest / 100.0) * 100.0))
+    depth = _classes(
+        contents, maps["deepest_reading"], edges, "viridis_r", "Deepest reading nearby (m)"
+    )
+    farthest = max(maps["well_distance"].max() * KM, 1e-3)
+    size = contours.step(0.0, farthest, 5)
+    steps = contours.levels(0.0, np.ceil(farthest / size) * size, size)
+    distance = _classes(
+        contents, maps["well_distance"] * KM, list(steps), "cividis", "Distance to a well (km)"
+    )
+    return Picture(
+        "basis",
+        "What the maps rest on",
+        f"Left, the deepest reading among the {NEAREST_WELLS} nearest wells: a map deeper than "
+        "that is carried down by the rock model, not tied to a measurement. Right, the distance to "
+        "the nearest well. Crossed: no basis, all maps are blank.",
+        [
+            as_panel(depth, "Map of the deepest reading among the nearest wells"),
+            as_panel(distance, "Map of the distance to the nearest well"),
+        ],
     )
 
 
-def _doubtful(name: str, contents: Contents) -> np.ndarray:
-    """Return the grid of cells carried down below every reading nearby, for this quantity."""
-    maps = contents.maps
-    match = re.fullmatch(r"temperature_(\d+(?:\.\d+)?)m", name)
-    if match:
-        below = maps["deepest_reading"] < float(match.group(1))
-    elif name.startswith("isotherm_"):
-        below = maps["deepest_reading"] < maps[name]
-    else:
-        below = maps["deepest_reading"] < 0.0
-    return contents.grid.array(maps, below.astype(float)) > 0.5
+def _pair(name: str, contents: Contents, ends: dict[str, tuple[float, float]]) -> Picture:
+    what = quantity(name, contents.about)
+    panels: list[Panel] = [
+        as_panel(value_figure(column, contents, ends), f"Map: {quantity(column, contents.about).label}")
+        for column in (name, f"{name}_std")
+    ]
+    return Picture(name, what.label, captions.of_map(what, contents.about), panels)
+
+
+def _symbol(what: Quantity) -> str:
+    return {"temperature": "Temperature", "isotherm": "Depth", "heat_flow": "Heat flow"}.get(
+        what.family, "Gradient"
+    )
+
+
+def _map(contents: Contents) -> tuple[Figure, Any]:
+    """Return a figure and axes in km that fit the grid."""
+    west, south, east, north = (edge * KM for edge in contents.grid.bounds)
+    shape = (north - south) / (east - west)
+    figure = new_figure(float(np.clip((WIDTH - 1.5) * shape + 0.85, 2.4, 7.0)))
+    ax = figure.subplots()
+    ax.set_facecolor(BLANK)
+    ax.set(xlim=(west, east), ylim=(south, north), aspect="equal")
+    ax.set(xlabel="Easting (km)", ylabel="Northing (km)")
+    ax.locator_params(nbins=6)
+    ax.ticklabel_format(useOffset=False, style="plain")
+    ax.tick_params(length=3)
+    return figure, ax
+
+
+def _stride(contents: Contents) -> int:
+    return -(-max(contents.grid.rows, contents.grid.cols) // PIXELS)
+
+
+def _thin(contents: Contents, values: Any) -> np.ndarray:
+    """Spread values of cells over the grid, every n-th row and column of a large one."""
+    stride = _stride(contents)
+    return contents.grid.array(contents.maps, values)[::stride, ::stride]
+
+
+def _axes(contents: Contents) -> tuple[np.ndarray, np.ndarray]:
+    stride = _stride(contents)
+    eastings, northings = contents.grid.centres
+    return eastings[::stride] * KM, northings[::stride] * KM
+
+
+def _paint(ax: Any, contents: Contents, values: np.ndarray, colours: Any, **scale: Any) -> Any:
+    west, north = contents.grid.west * KM, contents.grid.north * KM
+    step = _stride(contents) * contents.grid.cell_size * KM
+    rows, cols = values.shape
+    extent = (west, west + cols * step, north - rows * step, north)
+    masked = np.ma.masked_invalid(values)
+    window = ax.get_xlim(), ax.get_ylim()
+    image = ax.imshow(
+        masked, extent=extent, cmap=colours, interpolation="nearest", zorder=1, **scale
+    )
+    ax.set(xlim=window[0], ylim=window[1])
+    _cross(ax, contents)
+    return image
+
+
+def _cross(ax: Any, contents: Contents) -> None:
+    """Cross-hatch the cells without basis."""
+    no_basis = np.isnan(_thin(contents, contents.maps["well_distance"]))
+    _fill(ax, contents, no_basis, "xxx", CROSSES, 0.5)
 
 
 def _hatch(ax: Any, contents: Contents, doubtful: np.ndarray) -> None:
-    """Hatch what is extrapolated; cells without basis keep the blank colour, cross-hatched."""
-    eastings, northings = (axis * KM for axis in contents.grid.centres)
-    no_basis = np.isnan(contents.grid.array(contents.maps, contents.maps["well_distance"]))
-    for area, hatch in ((doubtful, "///"), (no_basis, "xx")):
-        if area.any() and min(area.shape) > 1:
-            ax.contourf(
-                eastings, northings, area.astype(float), levels=[0.5, 1.5], colors="none",
-                hatches=[hatch], zorder=2,
-            ).set_edgecolor("#8a949d" if hatch == "xx" else INK)
+    """Hatch what is extrapolated, in light over dark so that it shows on every colour."""
+    _fill(ax, contents, doubtful, "//", INK, 1.6)
+    _fill(ax, contents, doubtful, "//", "white", 0.8)
+
+
+def _fill(
+    ax: Any, contents: Contents, area: np.ndarray, hatch: str, colour: str, width: float
+) -> None:
+    if not area.any() or min(area.shape) < 2:
+        return
+    drawn = ax.contourf(
+        *_axes(contents), area.astype(float), levels=[0.5, 1.5], colors="none", hatches=[hatch],
+        zorder=2,
+    )  # fmt: skip
+    drawn.set_edgecolor(colour)
+    drawn.set_linewidth(0.0)
+    drawn.set_hatch_linewidth(width)
+
+
+def _contours(
+    ax: Any,
+    contents: Contents,
+    values: np.ndarray,
+    what: Quantity,
+    ends: dict[str, tuple[float, float]],
+) -> None:
+    """Draw labelled lines at round numbers, the same at all depths."""
+    step = contours.step(*ends[what.family], wanted=8)
+    finite = values[np.isfinite(values)]
+    at = contours.levels(finite.min(), finite.max(), step)
+    at = at[(at > finite.min()) & (at < finite.max())]
+    if not at.size or min(values.shape) < 2:
+        return
+    east, north = _axes(contents)
+    lines = ax.contour(
+        east, north, np.ma.masked_invalid(values), levels=at, colors="white", linewidths=0.9,
+        zorder=3,
+    )  # fmt: skip
+    labels = ax.clabel(lines, fmt="%g", fontsize=8.5, inline=True, inline_spacing=3)
+    for label in labels:
+        label.set(color=INK, zorder=5)
+        label.set_bbox({"facecolor": "white", "edgecolor": "none", "pad": 0.8, "alpha": 0.85})
 
 
 def _wells(ax: Any, contents: Contents) -> None:
-    used = contents.wells["well"].isin(contents.heat_flow["well"])
-    wells = contents.wells[used]
-    ax.plot(
-        wells["easting_m"] * KM, wells["northing_m"] * KM, linestyle="none", marker="o",
-        markersize=2.6, markerfacecolor="white", markeredgecolor="black", markeredgewidth=0.5,
-        zorder=3,
+    """Mark the wells in the maps by circles, those held out by triangles."""
+    wells = contents.wells
+    held = wells["well"].isin(contents.holdout)
+    used = wells["well"].isin(contents.heat_flow["well"]) & ~held
+    size = float(np.clip(60.0 / np.sqrt(max(used.sum(), 1)), 0.7, 3.0))
+    for rows, marker, factor in ((used, "o", 1.0), (held, "^", 1.8)):
+        ax.plot(
+            wells.loc[rows, "easting_m"] * KM, wells.loc[rows, "northing_m"] * KM,
+            linestyle="none", marker=marker, markersize=size * factor, markerfacecolor="white",
+            markeredgecolor="black", markeredgewidth=0.6, zorder=4, scalex=False, scaley=False,
+        )  # fmt: skip
+
+
+def _classes(
+    contents: Contents, values: Any, edges: list[float], ramp: str, label: str
+) -> Figure:
+    """Draw values in classes, with wells."""
+    import matplotlib as mpl
+    from matplotlib.colors import BoundaryNorm, ListedColormap
+
+    count = len(edges) - 1
+    colours = ListedColormap(mpl.colormaps[ramp](np.linspace(0.08, 0.92, count)))
+    figure, ax = _map(contents)
+    image = _paint(
+        ax, contents, _thin(contents, values), colours, norm=BoundaryNorm(edges, count)
     )
-    west, south, east, north = (edge * KM for edge in contents.grid.bounds)
-    ax.set_xlim(west, east)
-    ax.set_ylim(south, north)
+    _wells(ax, contents)
+    bar = figure.colorbar(image, ax=ax, shrink=0.9, pad=0.02, aspect=28, spacing="uniform")
+    bar.set_label(label)
+    bar.set_ticks(edges)
+    bar.ax.set_yticklabels([f"{edge:,.6g}" for edge in edges])
+    bar.outline.set_visible(False)
+    ax.set_title(label.split(" (")[0])
+    return figure

@@ -4,12 +4,15 @@ from __future__ import annotations
 
 import os
 from pathlib import Path
+from typing import Any
 
 from basinheat.delivery import cautions, metadata
-from basinheat.report import figures, mapfigures, summary
+from basinheat.delivery.manifest import without_folders
+from basinheat.report import attention, captions, figures, mapfigures, overview, sheet, summary
 from basinheat.report.contents import Contents
 
 TEMPLATES = Path(__file__).parent / "templates"
+LONGEST_SETTINGS = 200_000
 
 
 def write(path: str | Path, contents: Contents) -> None:
@@ -31,7 +34,6 @@ def write(path: str | Path, contents: Contents) -> None:
 def html(contents: Contents) -> str:
     """Return the page as text."""
     import jinja2
-    import yaml
 
     environment = jinja2.Environment(
         loader=jinja2.FileSystemLoader(TEMPLATES),
@@ -40,29 +42,65 @@ def html(contents: Contents) -> str:
         trim_blocks=True,
         lstrip_blocks=True,
     )
+    environment.filters["shown"] = sheet.shown
     return environment.get_template("report.html.j2").render(
         about=contents.about,
         grid=contents.grid,
-        cautions=cautions.CAUTIONS,
-        depth_reference=metadata.DEPTH_REFERENCE,
-        sigma=metadata.SIGMA,
-        key_figures=summary.key_figures(contents),
-        maps=mapfigures.map_pictures(contents),
-        corrections=figures.correction_picture(contents),
-        variograms=figures.variogram_picture(contents),
-        validation=figures.validation_picture(contents),
-        rows=summary.rows_sheet(contents),
-        reasons=summary.reasons_sheet(contents),
-        flags=summary.flags_sheet(contents),
-        methods=summary.methods_sheet(contents),
-        sources=summary.sources_sheet(contents),
-        scales=summary.scales_sheet(contents),
-        origins=summary.origins_sheet(contents),
-        covariance=summary.covariance_sheet(contents),
-        scores=summary.scores_sheet(contents),
-        baselines=summary.baselines_sheet(contents),
-        versions=summary.versions_sheet(contents.versions),
-        settings=yaml.safe_dump(contents.settings, sort_keys=False, allow_unicode=True),
         program=metadata.PROGRAM,
         version=metadata.VERSION,
+        depth_reference=metadata.DEPTH_REFERENCE,
+        sigma=metadata.SIGMA,
+        short_caution=cautions.SHORT,
+        cautions=cautions.CAUTIONS,
+        order=[captions.of_method(name) for name in contents.about.methods],
+        settings=_settings(contents.settings),
+        key_figures=overview.key_figures(contents),
+        attention=attention.points(contents),
+        unseen=attention.unseen(contents),
+        maps=mapfigures.map_pictures(contents),
+        pictures=_pictures(contents),
+        sheets=_sheets(contents),
     )
+
+
+def _pictures(contents: Contents) -> dict[str, Any]:
+    return {
+        "trust": mapfigures.trust_picture(contents),
+        "corrections": figures.correction_picture(contents),
+        "variograms": figures.variogram_picture(contents),
+        "validation": figures.validation_picture(contents),
+    }
+
+
+def _sheets(contents: Contents) -> dict[str, sheet.Sheet]:
+    made = {
+        "trust": overview.trust_sheet,
+        "quantiles": overview.quantiles_sheet,
+        "by_depth": overview.by_depth_sheet,
+        "by_method": overview.by_method_sheet,
+        "temperatures_to_look_at": overview.temperatures_to_look_at,
+        "heat_flow_to_look_at": overview.heat_flow_to_look_at,
+        "rows": summary.rows_sheet,
+        "reasons": summary.reasons_sheet,
+        "flags": summary.flags_sheet,
+        "methods": summary.methods_sheet,
+        "passed_over": summary.passed_over_sheet,
+        "learned": summary.learned_sheet,
+        "scales": summary.scales_sheet,
+        "sources": summary.sources_sheet,
+        "origins": summary.origins_sheet,
+        "rocks": summary.rocks_sheet,
+        "covariance": summary.covariance_sheet,
+        "scores": summary.scores_sheet,
+        "baselines": summary.baselines_sheet,
+    }
+    sheets = {name: make(contents) for name, make in made.items()}
+    return {**sheets, "versions": summary.versions_sheet(contents.versions)}
+
+
+def _settings(settings: dict[str, Any]) -> str:
+    """Return the settings as YAML, nothing hidden in it; folders of the machine are left out."""
+    import yaml
+
+    text = yaml.safe_dump(without_folders(settings), sort_keys=False, allow_unicode=True, width=100)
+    return "\n".join(sheet.shown(line) for line in text[:LONGEST_SETTINGS].splitlines())

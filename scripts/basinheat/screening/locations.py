@@ -19,6 +19,7 @@ COMPANY = 3  # a well with so many others about it is not alone
 CORE_WIDTHS = 5.0  # core: within this many median distances of the middle
 ABSURD_WIDTHS = 3.0  # further from the core than this many of its diagonals
 OUTSIDE_WIDTHS = 0.5
+OWN_SHARE = 0.25  # a group apart lies together within this share of its way to the others
 # What happens to coordinates on their way into tables (common practice).
 SLIPS = {
     "x and y exchanged": lambda x, y: (y, x),
@@ -87,9 +88,7 @@ def screen_locations(
         "coordinates_impossible",
         "x {x:g}, y {y:g} is no place in {crs}. Check the coordinates, their order and the crs.",
     )
-    return InputTable(
-        table.name, table.frame.drop(columns="_slip"), table.headers, table.broken
-    )
+    return table.with_frame(table.frame.drop(columns="_slip"))
 
 
 def _slips(frame: pd.DataFrame, map_crs: str) -> tuple[NDArray[np.object_], NDArray[np.object_]]:
@@ -102,7 +101,7 @@ def _slips(frame: pd.DataFrame, map_crs: str) -> tuple[NDArray[np.object_], NDAr
     off = _distance(place, place[core], 1)
     alone = _distance(place, place[np.isfinite(place).all(axis=1)], COMPANY + 1)
     # A group far away is another basin; a single well there is a slip or a typing error.
-    far[alone > OUTSIDE_WIDTHS * width] = "outside"
+    far[alone > np.maximum(OUTSIDE_WIDTHS * width, OWN_SHARE * off)] = "outside"
     far[(off > ABSURD_WIDTHS * width) & (far == "outside")] = "absurd"
     odd = np.flatnonzero((off > OUTSIDE_WIDTHS * width) | ~np.isfinite(off))
     for crs, rows in frame.iloc[odd].groupby("crs", sort=True).indices.items():

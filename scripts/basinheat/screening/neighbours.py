@@ -20,6 +20,7 @@ Flags = NDArray[np.bool_]
 
 FEWEST_NEIGHBOURS = 5
 DEPTH_CLASSES = 10
+READINGS_A_CLASS = 30  # fewer let single readings move the basin's median
 SMALLEST_SCALE_K_KM = 2.0  # neighbours closer than this agree by chance
 SCATTER_K = 5.0  # raw readings differ by mud cooling (common practice)
 MAD_TO_STD = 1.4826  # of a normal distribution
@@ -79,17 +80,12 @@ def screen_against_neighbours(table: InputTable, ledger: Ledger, rules: Screenin
         table.frame["_mended"] = mended
         sentence = (
             "{temperature:.1f} degC at {depth_m:.0f} m is {_gradient:.1f} K/km from the surface; "
-            "with column \"{header}\" in {_other} it would be {_mended:.0f} K/km. Mend the unit or "
+            'with column "{header}" in {_other} it would be {_mended:.0f} K/km. Mend the unit or '
             "the value; to use it as it is, add to the decisions: reading {reading_id}, keep."
         )
         before = len(table)
         table = ledger.screen(table, refuse, column, code, sentence)
-        table = InputTable(
-            table.name,
-            table.frame.drop(columns=["_other", "_gradient", "_mended"]),
-            table.headers,
-            table.broken,
-        )
+        table = table.with_frame(table.frame.drop(columns=["_other", "_gradient", "_mended"]))
         if len(table) < before:
             around = expected(table.frame, rules.neighbours)
     score = around.score(gradient_k_km(table.frame))
@@ -107,7 +103,8 @@ def expected(frame: pd.DataFrame, neighbours: int) -> Expected:
     Parameters
     ----------
     frame : DataFrame, (n,)
-        Columns ``well, easting_m, northing_m, depth_m, temperature, surface_temperature_degc``.
+        Columns ``row`` (of the well), ``easting_m, northing_m, depth_m, temperature,
+        surface_temperature_degc``.
     neighbours : int
         Nearest other wells to compare with.
     """
@@ -115,7 +112,7 @@ def expected(frame: pd.DataFrame, neighbours: int) -> Expected:
 
     gradient, depth = gradient_k_km(frame), frame["depth_m"].to_numpy(float)
     regional = _by_depth(depth, gradient)
-    code, names = pd.factorize(frame["well"], sort=True)
+    code, names = pd.factorize(frame["row"], sort=True)
     wells = (
         frame[["easting_m", "northing_m"]]
         .assign(value=gradient - regional, code=code)
@@ -144,7 +141,8 @@ def expected(frame: pd.DataFrame, neighbours: int) -> Expected:
 def _by_depth(depth_m: Array, gradient_k_km: Array) -> Array:
     """Return the basin's median gradient at each depth, straight lines between depth classes."""
     known = np.isfinite(gradient_k_km)
-    edges = np.unique(np.quantile(depth_m[known], np.linspace(0.0, 1.0, DEPTH_CLASSES + 1)))
+    number = int(np.clip(known.sum() // READINGS_A_CLASS, 1, DEPTH_CLASSES))
+    edges = np.unique(np.quantile(depth_m[known], np.linspace(0.0, 1.0, number + 1)))
     place = np.clip(np.searchsorted(edges, depth_m[known], side="right") - 1, 0, len(edges) - 2)
     classes = pd.DataFrame({"z": depth_m[known], "g": gradient_k_km[known]}).groupby(
         np.maximum(place, 0)
@@ -215,8 +213,8 @@ def _total_depth(frame: pd.DataFrame) -> tuple[Flags, Flags]:
 
 def _backed_by_own_well(frame: pd.DataFrame, gradient: Array) -> Flags:
     """Tell which readings agree with those at other depths of their well."""
-    values = frame[["well", "depth_m"]].assign(gradient=gradient)
-    wells = values.groupby("well")
+    values = frame[["row", "depth_m"]].assign(gradient=gradient)
+    wells = values.groupby("row")
     deepest, shallowest = (wells["depth_m"].transform(how) for how in ("max", "min"))
     spread = (deepest - shallowest > 0.2 * deepest).to_numpy()
     return spread & (wells["gradient"].transform("median").to_numpy() >= 0.75 * gradient)

@@ -43,7 +43,7 @@ def depth_sets(frame: pd.DataFrame, same_depth_m: float) -> np.ndarray:
     Parameters
     ----------
     frame : DataFrame, (n,)
-        Columns ``well, kind, depth_m``.
+        Columns ``row`` (of the well), ``kind, depth_m``.
     same_depth_m : float
         Gap that parts sets, m.
 
@@ -51,10 +51,14 @@ def depth_sets(frame: pd.DataFrame, same_depth_m: float) -> np.ndarray:
     -------
     ndarray of int, (n,)
     """
-    order = frame.sort_values(["well", "kind", "depth_m"], kind="stable")
-    new = (order[["well", "kind"]] != order[["well", "kind"]].shift()).any(axis=1)
-    new |= order["depth_m"].diff() > same_depth_m
-    return new.cumsum().loc[frame.index].to_numpy()
+    depth, row = frame["depth_m"].to_numpy(), frame["row"].to_numpy()
+    kind = pd.factorize(frame["kind"], sort=True)[0]
+    order = np.lexsort((depth, kind, row))
+    step = [np.diff(values[order], prepend=np.nan) for values in (row, kind, depth)]
+    new = (step[0] != 0) | (step[1] != 0) | (step[2] > same_depth_m)
+    number = np.empty(len(order), np.int64)
+    number[order] = np.cumsum(new)
+    return number
 
 
 def _repeated(table: InputTable, ledger: Ledger, gap_m: float) -> InputTable:
@@ -62,7 +66,7 @@ def _repeated(table: InputTable, ledger: Ledger, gap_m: float) -> InputTable:
     frame = table.frame
     logged = (frame["kind"] == "bht").to_numpy()
     rounded = frame["temperature"].round(4)
-    key = [frame["well"], rounded.where(logged)]
+    key = [frame["row"], rounded.where(logged)]
     deepest = frame.groupby(key)["depth_m"].transform("max")
     shallowest = frame.groupby(key)["depth_m"].transform("min")
     repeated = (deepest - frame["depth_m"] > gap_m).to_numpy() & logged
@@ -102,8 +106,8 @@ def _copied(table: InputTable, ledger: Ledger, same_depth_m: float) -> InputTabl
         later,
         "temperature",
         "copied_temperature",
-        "the same {temperature:.1f} degC was noted in an earlier run at this depth: the thermometer "
-        "was not reset or the value copied, and the earliest counts.",
+        "the same {temperature:.1f} degC was noted in an earlier run at this depth: the value was "
+        "copied or the thermometer not reset, and the earliest counts.",
     )
 
 
@@ -127,9 +131,14 @@ def _inconsistent(frame: pd.DataFrame, rules: Screening, same_depth_m: float) ->
     sets = (
         frame.assign(_set=number)
         .groupby("_set")
-        .agg(well=("well", "first"), kind=("kind", "first"), z=("depth_m", "mean"), t=("temperature", "max"))
+        .agg(
+            row=("row", "first"),
+            kind=("kind", "first"),
+            z=("depth_m", "mean"),
+            t=("temperature", "max"),
+        )
     )
-    same = (sets[["well", "kind"]] == sets[["well", "kind"]].shift()).all(axis=1)
+    same = (sets[["row", "kind"]] == sets[["row", "kind"]].shift()).all(axis=1)
     step = sets["z"].diff()
     with np.errstate(divide="ignore", invalid="ignore"):
         gradient = 1000.0 * sets["t"].diff() / step

@@ -11,6 +11,8 @@ from basinheat.settings.inputs import Inputs
 from basinheat.settings.maps import Maps
 from basinheat.settings.model import Settings
 
+_LIBRARY = Path(__file__).parents[1]
+
 
 def nearby(path: str | Path) -> str:
     """Return the path relative to the current folder where it lies inside it, else absolute.
@@ -19,6 +21,15 @@ def nearby(path: str | Path) -> str:
     """
     path, here = os.path.abspath(path), os.getcwd()
     return os.path.relpath(path, here) if Path(path).is_relative_to(here) else path
+
+
+def data_files(folder: str) -> list[str]:
+    """Return the files in a folder of the library that are no code, sorted.
+
+    A rule that uses them reads them as inputs: the digest of the code does not see them.
+    """
+    found = (path for path in (_LIBRARY / folder).iterdir() if path.is_file())
+    return sorted(nearby(path) for path in found if path.suffix not in (".py", ".pyc"))
 
 
 def located(name: str | None, folder: str | Path) -> list[str]:

@@ -90,10 +90,14 @@ def merged(base: Any, overlay: Any) -> Any:
 
 
 def _plain(raw: Mapping[str, Any]) -> dict[str, Any]:
-    """Return the config as plain dicts; a section left empty means its defaults."""
+    """Return the config as plain dicts, their keys sorted; an empty section means its defaults.
+
+    Sorted, so that the order in which a config is written changes neither jobs nor bytes.
+    """
     plain = {str(key): value for key, value in raw.items() if value is not None}
     return {
-        key: _plain(value) if isinstance(value, Mapping) else value for key, value in plain.items()
+        key: _plain(value) if isinstance(value, Mapping) else value
+        for key, value in sorted(plain.items())
     }
 
 

@@ -66,7 +66,7 @@ class Maps(Section):
     def _check_deepest(cls, deepest_m: float, others: ValidationInfo) -> float:
         deepest_map = max(others.data.get("depths_m", [0.0]))
         if deepest_map > deepest_m:
-            raise ValueError(f"must not be above the deepest of depths_m ({deepest_map:g} m)")
+            raise ValueError(f"must reach the deepest of depths_m ({deepest_map:g} m)")
         return deepest_m
 
 

@@ -23,8 +23,12 @@ ORDINARY = {
     "siltstone": (2.8, 0.56, 0.39, 1.4),
     "granite": (3.1, 0.01, 0.00, 2.6),
 }
-# Fall of matrix conductivity per kelvin above 25 degC: k = k25 / (1 + c (T - 25)).
-_FALL = (0.0008, 0.0015)
+# Fall of matrix conductivity above 25 degC, k = k25 / (1 + c (T - 25)): Vosteen & Schellschmidt
+# (2003) say that 1/k is linear in T, 1/k = (0.99 + T (a - b/k0)) / k0. Published laws differ by a
+# quarter of the fall; the basin's own is somewhere among them.
+_SEDIMENT, _CRYSTALLINE = (0.0034, 0.0039), (0.0030, 0.0042)
+_FALL_STD_LN = 0.25
+_FALL_BY_ROCK = (0.9, 1.1)
 # Halite: 6.2 / (1 + 0.00485 T), Clauser & Huenges (1995), rewritten about 25 degC.
 _FALL_HALITE = 0.00485 / (1.0 + 25.0 * 0.00485)
 
@@ -61,12 +65,14 @@ class Rocks:
         """Draw a basin's rocks around the ordinary ones."""
         matrix, porosity, decay, heat = np.array(list(ORDINARY.values())).T
         n = len(ORDINARY)
-        fall = rng.uniform(*_FALL, n)
-        halite = list(ORDINARY).index("halite")
-        fall[halite] = _FALL_HALITE * rng.uniform(0.9, 1.1)
+        matrix = matrix * np.exp(rng.normal(0.0, std_ln, n))
+        law = [_CRYSTALLINE if name == "granite" else _SEDIMENT for name in ORDINARY]
+        fall = _fall_per_k(matrix, *np.array(law).T)
+        fall[list(ORDINARY).index("halite")] = _FALL_HALITE
+        fall *= np.exp(rng.normal(0.0, _FALL_STD_LN)) * rng.uniform(*_FALL_BY_ROCK, n)
         return cls(
             names=tuple(ORDINARY),
-            matrix_w_mk=matrix * np.exp(rng.normal(0.0, std_ln, n)),
+            matrix_w_mk=matrix,
             fall_per_k=fall,
             porosity=porosity * np.exp(rng.normal(0.0, 0.04, n)),
             decay_per_m=decay * np.exp(rng.normal(0.0, 0.06, n)) / 1000.0,
@@ -102,6 +108,15 @@ class Rocks:
         matrix = self.matrix_w_mk[rock] * factor / (1.0 + self.fall_per_k[rock] * warmer)
         porosity = self.porosity_at(rock, depth_m)
         return matrix ** (1.0 - porosity) * water_conductivity(temperature_degc) ** porosity
+
+
+def _fall_per_k(matrix_w_mk: Array, a: Array, b: Array) -> Array:
+    """Return c of 1/k = (1 + c (T - 25)) / k25 from the two coefficients of the law."""
+    level = matrix_w_mk
+    for _ in range(60):  # k0 from k25 = k0 / (0.99 + 25 (a - b / k0))
+        level = matrix_w_mk * (0.99 + 25.0 * (a - b / level))
+    per_k = a - b / level
+    return per_k / (0.99 + 25.0 * per_k)
 
 
 def water_conductivity(temperature_degc: Array) -> Array:

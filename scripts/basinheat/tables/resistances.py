@@ -18,4 +18,5 @@ class Resistances(Table):
     open_columns = {
         "resistance_": number("m2 K/W", "part of the resistance in one lithology"),
         "radiogenic_": number("K", "part of the radiogenic term in one lithology"),
+        "change_": number("m2 K/W", "change of resistance per unit amplitude of a source"),
     }
