@@ -11,6 +11,7 @@ rocks = resistances.estimate(
     tables.Layers.load(snakemake.input.layers),
     Conductivity(**snakemake.params.conductivity),
     HeatFlow(**snakemake.params.heat_flow),
+    snakemake.params.holdout,
 )
 tables.Resistances.save(rocks.resistances, snakemake.output.resistances)
 tables.StructurePoints.save(rocks.structure, snakemake.output.structure)

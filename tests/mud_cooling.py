@@ -16,7 +16,7 @@ from basinheat import tables
 RADII_M = (0.108, 0.1556)  # 8 1/2 and 12 1/4 inch bits
 CIRCULATION_H = (2.0, 3.0, 4.0, 6.0, 9.0)
 SINCE_H = np.array([5.0, 7.0, 9.0, 12.0, 15.0, 18.0, 22.0, 26.0, 32.0, 40.0])
-STEPS = 120
+STEPS = 60
 
 
 def left_on_axis(circulation_h, since_h, radius_m, diffusivity, capacity, conductivity):

@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 import logging
-from dataclasses import dataclass
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
 
 import numpy as np
 import pandas as pd
@@ -42,6 +43,7 @@ def estimate(
     layers: pd.DataFrame,
     conductivity: Conductivity,
     heat_flow: HeatFlow,
+    holdout: Sequence[str] = (),
 ) -> Rocks:
     """Integrate thermal resistance from the surface to each temperature.
 
@@ -54,6 +56,8 @@ def estimate(
         The tables of these names; wells with surface temperatures.
     conductivity, heat_flow
         Sections of the settings.
+    holdout : sequence of str
+        Wells that must not inform the maps: they have resistances, but no structure.
 
     Returns
     -------
@@ -91,7 +95,9 @@ def estimate(
             other[0]["resistance"].sum(1) - rows["resistance"].sum(1),
             other[1]["value"] - points["value"],
         )
-    return _tables(model, estimates, wells, rows, points, changes, rejected)
+    rocks = _tables(model, estimates, wells, rows, points, changes, rejected)
+    mapped = ~rocks.structure["well"].isin(holdout)
+    return replace(rocks, structure=rocks.structure[mapped].reset_index(drop=True))
 
 
 def _variants(model: RockModel) -> dict[str, RockModel]:

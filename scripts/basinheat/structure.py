@@ -18,6 +18,8 @@ from basinheat.settings.heat import BelowLayers
 Floats = NDArray[np.float64]
 
 LAGS = 12
+FEWEST_PAIRS = 30  # common practice for a single lag (Journel & Huijbregts 1978)
+UNTOLD = Covariance("matern15", 0.15**2, 50_000.0)  # common practice, no source
 LEVELS = (0.5, 4.0)  # leave-one-out may change the fitted level by so much
 GROUP_M = 1000.0  # intervals of a kilometre share one covariance: a quarter of the pairs each
 CARRIED = ["heat_production_uw_m3", "reference_temperature_degc", "temperature_slope_per_k"]
@@ -50,6 +52,7 @@ def fit_structure(
         vertical_correlation_m.
     """
     groups, errors = [], []
+    wells_per_interval = enough(points, wells_per_interval)
     points = points.assign(group=(points["top_m"] // GROUP_M).astype(int))
     edges = _lags(points)
     for _, group in points.groupby("group", sort=True):
@@ -138,8 +141,18 @@ def _pooled(parts: list[Experimental]) -> Experimental:
     )
 
 
+def enough(points: pd.DataFrame, wells_per_interval: int) -> int:
+    """Return the wells an interval needs; where few wells have layers, all of these suffice."""
+    return max(1, min(wells_per_interval, points["well"].nunique()))
+
+
 def _closest(experimental: Experimental, models: tuple[str, ...]) -> Covariance:
-    """Fit every model by weighted least squares (Cressie 1985) and keep the closest."""
+    """Fit every model by weighted least squares (Cressie 1985) and keep the closest.
+
+    Pairs too few to tell anything leave the stated covariance.
+    """
+    if experimental.pairs.sum() < FEWEST_PAIRS:
+        return UNTOLD
 
     def misfit(covariance: Covariance) -> float:
         fitted = np.maximum(covariance.semivariance(experimental.lag_m), 1e-300)
@@ -187,6 +200,7 @@ def krige_conductivity(
     """
     xy = cells[["easting_m", "northing_m"]].to_numpy()
     by_top = dict(tuple(points.groupby("top_m")))
+    wells_per_interval = enough(points, wells_per_interval)
     names = sorted(c for c in points.columns if c.startswith("loading_"))
     frames, deepest_known = [], 0.0
     for top in np.arange(0.0, deepest_m, interval_m):

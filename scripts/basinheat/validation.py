@@ -18,7 +18,7 @@ from basinheat.products import rebuild, shared_sources
 from basinheat.rebuild import Columns, at_depths
 from basinheat.settings.heat import Conductivity
 from basinheat.settings.maps import Maps, Validation
-from basinheat.structure import krige_conductivity
+from basinheat.structure import enough, krige_conductivity
 
 Floats = NDArray[np.float64]
 
@@ -181,13 +181,14 @@ def _structure_left_out(
 ) -> pd.DataFrame:
     """Conductivity at each well from the others, interval by interval."""
     frames = []
+    wells_per_interval = enough(mapped.structure, wells_per_interval)
     for group in mapped.structure_model["groups"]:
         covariance = Covariance.from_dict(group["covariance"])
         inside = mapped.structure["top_m"].between(
             group["top_m"], group["base_m"], inclusive="left"
         )
         for _, frame in mapped.structure[inside].groupby("top_m"):
-            if len(frame) < wells_per_interval:
+            if len(frame) < max(wells_per_interval, 2):  # one well leaves nothing to predict it
                 continue
             xy = frame[["easting_m", "northing_m"]].to_numpy()
             own = frame["value_std"].to_numpy() ** 2

@@ -130,6 +130,23 @@ def test_a_header_copied_to_another_depth(tmp_path):
     assert "repeated_temperature" in kept["flags"].item()
 
 
+@pytest.mark.parametrize("kind", ["bht", "dst", "equilibrium", "corrected"])
+def test_tables_of_one_kind_or_none(tmp_path, kind):
+    readings = f"W,2005,{degc(2005)},,,,,,\nW,2505,{degc(2505)},,,,,,\n"
+    out = prepare(
+        tmp_path, base=False, wells=well(), readings=readings, readings_file={"kind": kind}
+    )
+    assert out.readings["kind"].tolist() == [kind, kind]
+    assert prepare(tmp_path, base=False, wells=well()).readings.empty
+    assert prepare(tmp_path, base=False).wells.empty
+
+
+def test_equal_temperatures_that_were_read_apart_stay(tmp_path):
+    """Early on, mud has the deep rock as cool as the shallow one is hours later."""
+    rows = f"W,1505,{degc(1505)},,20,4,,,1\nW,2505,{degc(1505)},,4,4,,,2\n"
+    assert codes(prepare(tmp_path, wells=well(), readings=rows)) == []
+
+
 def test_equal_temperatures_close_by_stay(tmp_path):
     rows = "W,2405,84,,,,,,1\nW,2505,84,,,,,,2\n"
     assert codes(prepare(tmp_path, wells=well(), readings=rows)) == []

@@ -107,7 +107,7 @@ rule write_report:
         catalogue=lambda wildcards: SECTIONS[wildcards.scenario]["conductivity"][
             "catalogue"
         ]
-        or f"{LIBRARY}/conductivity/catalogue.csv",
+        or data_files("conductivity")[0],
         templates=data_files("report/templates"),
     output:
         report="results/{run}/{scenario}/delivery/report.html",

@@ -61,6 +61,7 @@ rule estimate_resistances:
     params:
         conductivity=lambda wildcards: SECTIONS[wildcards.scenario]["conductivity"],
         heat_flow=lambda wildcards: SECTIONS[wildcards.scenario]["heat_flow"],
+        holdout=BASE.validation.holdout,
         code=code_digest("estimate_resistances.py"),
     message:
         "Thermal resistance of the rock above each temperature ({wildcards.scenario})"

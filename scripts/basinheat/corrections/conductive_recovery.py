@@ -33,13 +33,12 @@ def estimate(sets: ReadingSets, context: Context) -> Outcome:
     Returns
     -------
     Outcome
-        One estimate per set, less the mean error of the assumed properties.
+        One estimate per set, and what the shared sources do to it.
     """
     prior = learn_times(sets, context.circulation_h, context.circulation_factor)
     base = Case(MUD, context.diffusivity_m2_s)
     fit = fit_basin(sets, prior, base, context.trend)
-    loadings, mean_error = sources(sets, fit, prior, base, context.surface_shared_std_k)
-    temperature = sets.surface_temperature_degc + fit.rise_k - mean_error
+    temperature = sets.surface_temperature_degc + fit.rise_k
     limits = np.array([misfit_limit(n) for n in range(int(sets.count.max(initial=0)) + 1)])
     excess = np.maximum(1.0, fit.misfit / limits[sets.count])
     well_own = context.well_share * fit.scatter_k2
@@ -56,7 +55,7 @@ def estimate(sets: ReadingSets, context: Context) -> Outcome:
             "recovery:untimed",
             np.where(sets.timed > 1, "recovery:repeated", "recovery:single"),
         ),
-        loadings=loadings,
+        loadings=sources(sets, fit, prior, base, context.surface_shared_std_k),
         flags={
             "times_assumed": untimed,
             "circulation_assumed": ~untimed & ~np.isfinite(sets.circulation_h),

@@ -56,8 +56,8 @@ def physics(base: Case) -> dict[str, tuple[Case, Case, float, str]]:
 
 def sources(
     sets: ReadingSets, fit: Fit, prior: TimePrior, base: Case, surface_std_k: float
-) -> tuple[dict[str, Loading], Floats]:
-    """Return what each shared source does to the estimates, and what they err by on average.
+) -> dict[str, Loading]:
+    """Return what each shared source does to the estimates.
 
     The basin's law is learned anew under each change, so a loading is what remains after the
     basin's own repeated readings had their say.
@@ -77,16 +77,14 @@ def sources(
 
     Returns
     -------
-    dict of str to Loading, (sets,) array in K
-        Loadings (half the change from one standard deviation below to one above), and the mean
-        error: recovery is not linear in its properties, and the assumed values are but the
-        middle of a range.
+    dict of str to Loading
+        Half the change from one standard deviation below to one above: recovery is not linear in
+        its properties, and a change to one side alone would speak for that side only.
     """
-    loadings, mean_error = {}, np.zeros(len(sets))
+    loadings = {}
     for source, (up, down, std, unit) in physics(base).items():
         above, below = (_error(sets, fit, prior, case) for case in (up, down))
         loadings[source] = Loading((above - below) / 2.0, std, unit)
-        mean_error += (above + below) / 2.0
     if surface_std_k > 0.0:
         warmer = _error(sets, fit, prior, replace(base, surface_k=surface_std_k))
         loadings["surface_temperature"] = Loading(warmer, surface_std_k, "K")
@@ -97,7 +95,7 @@ def sources(
     untimed = np.where(sets.timed == 0, level * UNTIMED_LN_STD, 0.0)
     loadings["recovery:cooling"] = Loading(level * std, std, "ln K")
     loadings["method:untimed"] = Loading(untimed, UNTIMED_LN_STD, "ln K")
-    return loadings, mean_error
+    return loadings
 
 
 def _error(sets: ReadingSets, fit: Fit, prior: TimePrior, case: Case) -> Floats:

@@ -220,7 +220,7 @@ class GlobalKriging:
         beta = self._factor.coefficients(white)
         duals = self._factor.unwhiten(self._factor.remove_drift(white))
         carried = np.empty((len(places), white.shape[1]))
-        for rows in self._blocks(len(places), block):
+        for rows in row_blocks(len(places), len(self._xy), block):
             carried[rows] = self._covariance.between(places[rows], self._xy) @ duals
             carried[rows] += drift[rows] @ beta
         return carried

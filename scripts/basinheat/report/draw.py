@@ -8,6 +8,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 if TYPE_CHECKING:
+    from matplotlib.axes import Axes
     from matplotlib.figure import Figure
 
 INK, FAINT, ACCENT, SECOND = "#22303c", "#b9c2ca", "#1f6f8b", "#c25b1d"
@@ -62,7 +63,24 @@ def new_figure(height: float = 4.0, width: float = WIDTH) -> Figure:
 
     mpl.rcdefaults()
     mpl.rcParams.update(_LOOK)
-    return Figure(figsize=(width, height), layout="constrained")
+    return Figure(figsize=(width, height))
+
+
+def plot_axes(figure: Figure, legend_rows: int = 0) -> Axes:
+    """Return axes with room for labels, and for a legend below; placed by hand, which is fast."""
+    width, height = figure.get_size_inches()
+    left, right, top = 0.68, 0.12, 0.32
+    bottom = 0.52 + (0.08 + 0.2 * legend_rows if legend_rows else 0.0)
+    size = (width - left - right) / width, (height - top - bottom) / height
+    return figure.add_axes((left / width, bottom / height, *size))
+
+
+def legend_below(figure: Figure, columns: int = 1) -> None:
+    """Put the legend of the axes at the foot of the figure."""
+    figure.legend(
+        loc="lower left", bbox_to_anchor=(0.02, 0.0), ncols=columns, borderaxespad=0.2,
+        labelspacing=0.25, columnspacing=1.2, handletextpad=0.5,
+    )  # fmt: skip
 
 
 def as_panel(figure: Figure, alt: str) -> Panel:

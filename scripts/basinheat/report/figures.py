@@ -18,7 +18,9 @@ from basinheat.report.draw import (
     Panel,
     Picture,
     as_panel,
+    legend_below,
     new_figure,
+    plot_axes,
 )
 
 MARKERS = "os^Dv<>Phx"
@@ -33,7 +35,7 @@ def correction_picture(contents: Contents) -> Picture:
     depth = table["depth_m"] * KM
     size = _size(len(table))
     figure = new_figure(4.4)
-    ax = figure.subplots()
+    ax = plot_axes(figure)
     ax.plot(
         table["raw_temperature_degc"], depth, "o", color=FAINT, markersize=size, label="as read",
         markeredgewidth=0,
@@ -60,7 +62,7 @@ def correction_picture(contents: Contents) -> Picture:
 def _by_method(contents: Contents, size: float) -> Panel:
     table = contents.temperatures
     figure = new_figure(4.4)
-    ax = figure.subplots()
+    ax = plot_axes(figure, legend_rows=table["method"].nunique())
     for i, (method, part) in enumerate(table.groupby("method", sort=True)):
         ax.plot(
             part["correction_k"], part["depth_m"] * KM, MARKERS[i % len(MARKERS)],
@@ -70,7 +72,7 @@ def _by_method(contents: Contents, size: float) -> Panel:
     ax.axvline(0.0, color=INK, linewidth=0.6, zorder=0)
     ax.set(xlabel="Correction (K)", ylabel="Depth (km)", title="Correction by method")
     ax.set_ylim(_down(ax))
-    figure.legend(loc="outside lower left", ncols=1, markerscale=1.6)
+    legend_below(figure)
     return as_panel(figure, "Correction against depth, by method")
 
 
@@ -78,7 +80,8 @@ def variogram_picture(contents: Contents) -> Picture:
     """Draw the variograms of heat flow and of conductivity, with the fitted models."""
     groups = contents.structure_model["groups"]
     figures = [new_figure(3.8), new_figure(3.8)]
-    left, right = (figure.subplots() for figure in figures)
+    left = plot_axes(figures[0])
+    right = plot_axes(figures[1], legend_rows=-(-len(groups) // 3))
     _variogram(left, contents.heat_flow_model, ACCENT)
     left.set(ylabel="Semivariance (mW²/m⁴)", title="Heat flow")
     for i, group in enumerate(groups):
@@ -86,7 +89,7 @@ def variogram_picture(contents: Contents) -> Picture:
         _variogram(right, group, COLOURS[i % len(COLOURS)], label, MARKERS[i % len(MARKERS)])
     right.set(ylabel="Semivariance", title="ln of conductivity, by depth")
     if groups:
-        figures[1].legend(loc="outside right upper")
+        legend_below(figures[1], columns=3)
     return Picture(
         "variograms",
         "Variograms and fitted models",
@@ -128,16 +131,17 @@ def validation_picture(contents: Contents) -> Picture:
         "Wells left out of their own prediction",
         "First, heat flow of each well against what the others say (the line: equal; bars: the "
         "well's own σ). Second, errors of temperature by depth, well left out: they should lie "
-        "around zero at every depth. Third, how many errors lie inside the stated intervals: on "
-        "the line σ is right, above it σ is too wide, below it too narrow.",
-        [_left_out(contents), _by_depth(contents), _coverage(contents)],
+        "around zero at every depth. Third, those errors in units of their σ: like the curve "
+        "where σ is right. Fourth, how many errors lie inside the stated intervals: above the line "
+        "σ is too wide, below it too narrow.",
+        [_left_out(contents), _by_depth(contents), _standardised(contents), _coverage(contents)],
     )
 
 
 def _left_out(contents: Contents) -> Panel:
     table = contents.crossval_heat_flow
     figure = new_figure(4.2)
-    ax = figure.subplots()
+    ax = plot_axes(figure)
     both = table[["value", "predicted"]].to_numpy()
     both = both[np.isfinite(both)]
     ends = np.percentile(both, [0.2, 99.8]) if both.size else np.array([0.0, 1.0])
@@ -162,7 +166,7 @@ def _left_out(contents: Contents) -> Panel:
 def _by_depth(contents: Contents) -> Panel:
     table = contents.crossval_temperature
     figure = new_figure(4.2)
-    ax = figure.subplots()
+    ax = plot_axes(figure)
     ax.plot(
         table["left_out_k"], table["depth_m"] * KM, "o", color=SECOND, alpha=0.7,
         markersize=_size(len(table)), markeredgewidth=0,
@@ -176,9 +180,27 @@ def _by_depth(contents: Contents) -> Panel:
     return as_panel(figure, "Errors of temperature against depth, wells left out")
 
 
+def _standardised(contents: Contents) -> Panel:
+    table = contents.crossval_temperature
+    z = (table["left_out_k"] / table["left_out_std_k"]).to_numpy()
+    z = z[np.isfinite(z)]
+    figure = new_figure(4.2)
+    ax = plot_axes(figure)
+    edges = np.linspace(-4.0, 4.0, 33)
+    ax.hist(np.clip(z, -3.999, 3.999), bins=edges, color=ACCENT, alpha=0.6)
+    grid = np.linspace(-4.0, 4.0, 200)
+    normal = np.exp(-(grid**2) / 2) / np.sqrt(2 * np.pi)
+    ax.plot(grid, normal * len(z) * (edges[1] - edges[0]), color=INK)
+    ax.set(
+        xlabel="Error / its stated σ (ends: all beyond)", ylabel="Temperatures",
+        title="Temperature, well left out: is σ honest?", xlim=(-4.0, 4.0),
+    )  # fmt: skip
+    return as_panel(figure, "Histogram of errors of temperature over their stated uncertainty")
+
+
 def _coverage(contents: Contents) -> Panel:
     figure = new_figure(4.2)
-    ax = figure.subplots()
+    ax = plot_axes(figure, legend_rows=sum(key in contents.scores for key in captions.SCORES))
     ax.plot([0, 100], [0, 100], color=INK, linewidth=0.8)
     for i, (key, (title, _, _)) in enumerate(captions.SCORES.items()):
         score = contents.scores.get(key)
@@ -191,7 +213,7 @@ def _coverage(contents: Contents) -> Panel:
         )  # fmt: skip
     ax.set(xlim=(40, 100), ylim=(40, 100), aspect="equal", title="Are the intervals right?")
     ax.set(xlabel="Stated interval (%)", ylabel="Errors inside it (%)")
-    figure.legend(loc="outside lower left", ncols=1)
+    legend_below(figure)
     return as_panel(figure, "Share of errors inside the stated intervals")
 
 

@@ -19,7 +19,8 @@ if TYPE_CHECKING:
 KM = 1e-3
 BLANK, CROSSES = "#eceff1", "#aab3ba"
 PIXELS = 900  # of a map's longer side: more do not show
-_ANY_VALUE = 0.5
+_MARGINS, _TOP, _BOTTOM = (0.72, 1.0), 0.32, 0.52  # inches around a map, the bar at its right
+_YES = 0.5
 
 
 def map_pictures(contents: Contents) -> list[Picture]:
@@ -48,12 +49,13 @@ def value_figure(name: str, contents: Contents, ends: dict[str, tuple[float, flo
     low, high = ends[what.family]
     values = _thin(contents, contents.maps[name])
     image = _paint(ax, contents, values, mpl.colormaps[style.ramp(what.family)], vmin=low, vmax=high)
-    _hatch(ax, contents, _thin(contents, basis.below_readings(stem, contents)) > _ANY_VALUE)
+    _hatch(ax, contents, _thin(contents, basis.below_readings(stem, contents)) > _YES)
     if what.is_value:
         _contours(ax, contents, values, what, ends)
         _wells(ax, contents)
-    bar = figure.colorbar(image, ax=ax, shrink=0.9, pad=0.02, aspect=28, extend="both")
-    bar.set_label("σ " + f"({what.unit})" if name != stem else f"{_symbol(what)} ({what.unit})")
+    beyond = _beyond(values, low, high)
+    bar = figure.colorbar(image, cax=_bar_axes(figure, ax), extend=beyond)
+    bar.set_label(f"{'σ' if name != stem else _symbol(what)} ({what.unit})")
     bar.outline.set_visible(False)
     title = quantity(stem, contents.about).title
     ax.set_title(title if name == stem else f"σ: {title[0].lower()}{title[1:]}")
@@ -71,7 +73,7 @@ def trust_picture(contents: Contents) -> Picture:
     )
     farthest = max(maps["well_distance"].max() * KM, 1e-3)
     size = contours.step(0.0, farthest, 5)
-    steps = contours.levels(0.0, np.ceil(farthest / size) * size, size)
+    steps = np.arange(np.ceil(farthest / size) + 1.0) * size
     distance = _classes(
         contents, maps["well_distance"] * KM, list(steps), "cividis", "Distance to a well (km)"
     )
@@ -107,8 +109,13 @@ def _map(contents: Contents) -> tuple[Figure, Any]:
     """Return a figure and axes in km that fit the grid."""
     west, south, east, north = (edge * KM for edge in contents.grid.bounds)
     shape = (north - south) / (east - west)
-    figure = new_figure(float(np.clip((WIDTH - 1.5) * shape + 0.85, 2.4, 7.0)))
-    ax = figure.subplots()
+    width = WIDTH - sum(_MARGINS)
+    height = float(np.clip(width * shape, 1.5, 6.0))
+    figure = new_figure(height + _TOP + _BOTTOM)
+    total = height + _TOP + _BOTTOM
+    ax = figure.add_axes(
+        (_MARGINS[0] / WIDTH, _BOTTOM / total, width / WIDTH, height / total), anchor="SW"
+    )
     ax.set_facecolor(BLANK)
     ax.set(xlim=(west, east), ylim=(south, north), aspect="equal")
     ax.set(xlabel="Easting (km)", ylabel="Northing (km)")
@@ -116,6 +123,19 @@ def _map(contents: Contents) -> tuple[Figure, Any]:
     ax.ticklabel_format(useOffset=False, style="plain")
     ax.tick_params(length=3)
     return figure, ax
+
+
+def _bar_axes(figure: Figure, ax: Any) -> Any:
+    """Return axes for a colour bar at the right of a map."""
+    ax.apply_aspect()
+    place = ax.get_position()
+    return figure.add_axes((place.x1 + 0.1 / WIDTH, place.y0, 0.13 / WIDTH, place.height))
+
+
+def _beyond(values: np.ndarray, low: float, high: float) -> str:
+    """Return at which ends of the colours some cells lie beyond."""
+    under, over = np.nanmin(values) < low, np.nanmax(values) > high
+    return {(1, 1): "both", (1, 0): "min", (0, 1): "max"}.get((int(under), int(over)), "neither")
 
 
 def _stride(contents: Contents) -> int:
@@ -228,10 +248,10 @@ def _classes(
         ax, contents, _thin(contents, values), colours, norm=BoundaryNorm(edges, count)
     )
     _wells(ax, contents)
-    bar = figure.colorbar(image, ax=ax, shrink=0.9, pad=0.02, aspect=28, spacing="uniform")
+    bar = figure.colorbar(image, cax=_bar_axes(figure, ax), spacing="uniform")
     bar.set_label(label)
     bar.set_ticks(edges)
-    bar.ax.set_yticklabels([f"{edge:,.6g}" for edge in edges])
+    bar.ax.set_yticklabels([f"{edge + 0.0:,.6g}" for edge in edges])
     bar.outline.set_visible(False)
     ax.set_title(label.split(" (")[0])
     return figure

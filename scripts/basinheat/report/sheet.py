@@ -83,7 +83,7 @@ def number(value: Any, digits: int = 0, sign: bool = False) -> str:
     if value is None or not np.isfinite(value):
         return "–"
     rounded = round(float(value), digits) + 0.0  # no "-0.0"
-    return f"{rounded:{'+' if sign else ''},.{digits}f}".replace("-", "−")
+    return f"{rounded:{'+' if sign and rounded else ''},.{digits}f}".replace("-", "−")
 
 
 def percent(share: Any) -> str:

@@ -34,8 +34,9 @@ def reasons_sheet(contents: Contents) -> Sheet:
     rows = []
     for (table, code), part in ledger.groupby(["table", "code"], sort=True):
         first = part.sort_values(["source_file", "source_line"], kind="stable").iloc[0]
-        where = f"{first['source_file']}, line {first['source_line']}: {first['sentence']}"
-        rows.append([table, words(code), number(len(part)), where])
+        where = f"{first['source_file']}, line {first['source_line']}: "
+        example = (where if first["source_file"] else "") + first["sentence"]
+        rows.append([table, words(code), number(len(part)), example])
     note = "values: a cell was dropped, its row is kept. All rows: rejected.csv."
     headers = ["table", "reason", "#rows", "example"]
     return Sheet("Refused and merged rows, by reason", headers, rows, note)
@@ -63,12 +64,12 @@ def methods_sheet(contents: Contents) -> Sheet:
                 number(part["correction_k"].median(), 1, sign=True),
                 number(own.median(), 1),
                 number(part["shared_std_k"].median(), 1),
-                f"{reference.author} ({reference.year}), {reference.title}",
-                reference.status,
+                f"{reference.author} ({reference.year}), {reference.title}. "
+                f"Numbers: {reference.status}",
             ]
         )
     headers = ["method", "#temperatures", "#median correction (K)", "#median own σ (K)",
-               "#median shared σ (K)", "source", "how its numbers came here"]  # fmt: skip
+               "#median shared σ (K)", "source, and how its numbers came here"]  # fmt: skip
     return Sheet("Corrections used", headers, rows)
 
 

@@ -191,15 +191,17 @@ def _suspect(
         hot |= warm & (depth < SHALLOW_M)
     else:
         as_given, in_other = _total_depth(frame)
-        # With a total depth that only the other unit reaches, an ordinary excess is enough.
-        hot |= in_other & (gradient > highest)
         alone = (alone | in_other) & ~as_given
     score, limit = around.score(gradient), rules.outlier_score
     agrees = np.abs(around.score(mended)) <= limit
     cold |= (gradient < lowest) & (score < -limit) & agrees
     cold &= short & explained
     hot &= explained & (mended < gradient)
-    refuse = cold | (hot & (score > limit) & agrees & alone)
+    likely = hot
+    if column == "depth":
+        # With a total depth that only the other unit reaches, an ordinary excess is enough.
+        likely = hot | (explained & in_other & (gradient > highest))
+    refuse = cold | (likely & (score > limit) & agrees & alone)
     return refuse, hot & ~refuse
 
 
@@ -208,7 +210,9 @@ def _total_depth(frame: pd.DataFrame) -> tuple[Flags, Flags]:
     total, depth = (frame[name].to_numpy(float) for name in ("total_depth_m", "depth"))
     other = depth / FOOT
     as_given = other > 1.05 * total + 10.0
-    return as_given, (other <= total + 10.0) & (depth < 0.5 * total)
+    # Only a log is read at the bottom; tests and equilibrium logs may stand anywhere above.
+    bottom = (frame["kind"] == "bht").to_numpy()
+    return as_given, bottom & (other <= total + 10.0) & (depth < 0.5 * total)
 
 
 def _backed_by_own_well(frame: pd.DataFrame, gradient: Array) -> Flags:

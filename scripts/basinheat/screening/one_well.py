@@ -62,17 +62,25 @@ def depth_sets(frame: pd.DataFrame, same_depth_m: float) -> np.ndarray:
 
 
 def _repeated(table: InputTable, ledger: Ledger, gap_m: float) -> InputTable:
-    """Refuse the shallower of equal temperatures at depths too far apart to be equal."""
+    """Refuse the shallower of equal temperatures at depths too far apart to be equal.
+
+    Readings with times of their own that differ were each read: mud may cool a deep rock to the
+    temperature that a shallow one has later.
+    """
     frame = table.frame
     logged = (frame["kind"] == "bht").to_numpy()
-    rounded = frame["temperature"].round(4)
-    key = [frame["row"], rounded.where(logged)]
-    deepest = frame.groupby(key)["depth_m"].transform("max")
-    shallowest = frame.groupby(key)["depth_m"].transform("min")
-    repeated = (deepest - frame["depth_m"] > gap_m).to_numpy() & logged
-    flagged = (deepest == frame["depth_m"]) & (deepest - shallowest > gap_m)
-    mark(frame, flagged.to_numpy() & logged, "repeated_temperature")
-    frame["_deepest"] = deepest
+    keys = [frame["row"].to_numpy(), logged, frame["temperature"].round(4).to_numpy()]
+    depth, since = (frame[name].to_numpy() for name in ("depth_m", "since_circulation"))
+    order = np.lexsort((-depth, *keys))
+    steps = [key[order][1:] != key[order][:-1] for key in keys]
+    new = np.r_[True, np.logical_or.reduce(steps)][: len(order)]
+    group, deepest = (np.empty(len(order), np.int64) for _ in range(2))
+    group[order] = np.cumsum(new) - 1
+    deepest[order] = order[new][group[order]]
+    read_apart = np.isfinite(since) & np.isfinite(since[deepest]) & (since != since[deepest])
+    repeated = logged & (depth[deepest] - depth > gap_m) & ~read_apart
+    mark(frame, np.isin(group, group[repeated]) & ~repeated, "repeated_temperature")
+    frame["_deepest"] = depth[deepest]
     out = ledger.screen(
         table,
         repeated,
