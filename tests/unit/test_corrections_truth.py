@@ -71,8 +71,8 @@ def test_the_sources_explain_the_bias_of_each_basin(rows):
     raw = repeated.groupby("basin")["error"].mean()
     left = repeated.groupby("basin")["left"].mean()
     assert np.sqrt((raw**2).mean()) > 1.0
-    cooling = repeated.groupby("basin")["loading_recovery:cooling"].mean().abs()
-    assert (left.abs() < 2.0 * cooling).all()
+    shared = repeated.groupby("basin")["shared_std_k"].mean()
+    assert (left.abs() < 0.5 * shared).all()
     assert np.sqrt((left**2).mean()) < 0.5 * np.sqrt((raw**2).mean())
 
 

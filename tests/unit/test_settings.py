@@ -139,6 +139,17 @@ def test_plain_settings_rebuild_the_same_settings(folder):
     assert Settings(**plain) == settings
 
 
+def test_the_order_of_the_keys_means_nothing(folder):
+    def turned(raw):
+        if isinstance(raw, dict):
+            return {key: turned(raw[key]) for key in reversed(raw)}
+        return [turned(each) for each in raw] if isinstance(raw, list) else raw
+
+    raw = yaml.safe_load(DEMO.read_text(encoding="utf-8"))
+    one, other = (load_config(each, "", DEMO.parent)["base"] for each in (raw, turned(raw)))
+    assert repr(one.model_dump(mode="json")) == repr(other.model_dump(mode="json"))
+
+
 def test_every_column_says_what_it_is():
     for kind, columns in INPUT_COLUMNS.items():
         assert all(column.description for column in columns.values())

@@ -27,15 +27,11 @@ rule define_grid:
         runtime=20,
     params:
         settings=lambda wildcards: {
-            key: SECTIONS[wildcards.scenario][key]
-            for key in (
-                "run",
-                "crs",
-                "inputs",
-                "maps",
-                "surface_temperature",
-                "validation",
-            )
+            "validation": {"holdout": BASE.validation.holdout},
+            **{
+                key: SECTIONS[wildcards.scenario][key]
+                for key in ("run", "crs", "inputs", "maps", "surface_temperature")
+            },
         },
         code=code_digest("define_grid.py"),
     message:

@@ -7,18 +7,21 @@ import numpy as np
 from basinheat.corrections.method import Context, Loading, Method, Outcome, Reference, Uncertainty
 from basinheat.corrections.sets import ReadingSets
 
+# No correction of a disturbed reading is better than this (METHODS A12, common practice).
+_LEAST_K = 3.0
+
 UNCERTAINTY = Uncertainty(5.0, 2.0, "common practice, no source: a correction of unknown kind")
 
 
 def estimate(sets: ReadingSets, context: Context) -> Outcome:
     """Take the mean of the values as the formation temperature.
 
-    A stated uncertainty counts as the total; it never hides the shared part, which the unknown
-    correction left in all of them.
+    A stated uncertainty counts as the total, but not below 3 K: what is stated may be that of the
+    thermometer alone.
     """
     shared = np.full(len(sets), UNCERTAINTY.shared_k)
-    total = np.where(sets.std_stated, sets.warmest_std_k, UNCERTAINTY.total_k)
-    total = np.hypot(shared, np.sqrt(np.maximum(total**2 - shared**2, 1.0)))
+    stated = np.maximum(sets.warmest_std_k, _LEAST_K)
+    total = np.where(sets.std_stated, stated, UNCERTAINTY.total_k)
     independent, well = UNCERTAINTY.split(total, shared, context.well_share)
     return Outcome(
         temperature_degc=sets.mean_degc,

@@ -301,6 +301,7 @@ def _variogram(joint: Joint, classes: list[str], xy: np.ndarray) -> dict[str, An
         xy,
         value,
         reduced.variance,
+        max_lag=min(1.5 * joint.covariance.range_m, 0.5 * float(np.hypot(*np.ptp(xy, axis=0)))),
         loadings=reduced.loadings,
         prior_covariance=joint.posterior,
     )

@@ -17,8 +17,8 @@ _MAPS = {
     "the uncertainty. About two of three places lie within one σ of the map, nineteen of twenty "
     "within two.",
     "isotherm": "Depth at which the rock reaches this temperature: shallow is hot. Blank and not "
-    "crossed where it lies deeper than {deepest:g} m. For a well that must reach it, add σ to the "
-    "depth.",
+    "crossed where it lies deeper than {deepest:g} m. For a well that must reach it, plan deeper "
+    "by the uncertainty (see the cautions).",
 }
 
 _SOURCES = {
@@ -29,6 +29,9 @@ _SOURCES = {
     "recovery:cooling": "cooling of the hole while mud circulates",
     "method:untimed": "readings without a time since circulation",
     "method:dst": "drill-stem tests",
+    "rock:compaction": "loss of porosity with depth",
+    "rock:temperature_law": "change of conductivity with temperature",
+    "rock:heat_production": "heat production of the rock",
 }
 
 _CLASSES = {

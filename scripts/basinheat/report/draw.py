@@ -79,7 +79,7 @@ def legend_below(figure: Figure, columns: int = 1) -> None:
     """Put the legend of the axes at the foot of the figure."""
     figure.legend(
         loc="lower left", bbox_to_anchor=(0.02, 0.0), ncols=columns, borderaxespad=0.2,
-        labelspacing=0.25, columnspacing=1.2, handletextpad=0.5,
+        labelspacing=0.25, columnspacing=1.2, handletextpad=0.5, markerscale=1.4,
     )  # fmt: skip
 
 

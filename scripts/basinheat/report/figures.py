@@ -111,14 +111,13 @@ def _variogram(
     covariance = Covariance.from_dict(record["covariance"])
     reach = 1.2 * covariance.range_m
     if measured and measured["lag_m"]:
-        lag, gamma, pairs = (
-            np.array(measured[key], float) for key in ("lag_m", "gamma", "pairs")
-        )
+        lag, gamma, pairs = (np.array(measured[key], float) for key in ("lag_m", "gamma", "pairs"))
         reach = max(lag.max(), 1.0)
         size = 8 + 40 * pairs / max(pairs.max(), 1)
         ax.scatter(lag * KM, gamma, s=size, color=colour, alpha=0.7, linewidths=0, marker=marker)
     h = np.linspace(reach / 200, reach, 200)
-    ax.plot(h * KM, covariance.semivariance(h), color=colour, label=label)
+    ax.plot(h * KM, covariance.semivariance(h), color=colour)
+    ax.plot([], [], color=colour, marker=marker, markersize=4, label=label)
     ax.set(xlabel="Distance (km)")
     ax.set_ylim(bottom=0)
     ax.set_xlim(left=0)
@@ -158,7 +157,7 @@ def _left_out(contents: Contents) -> Panel:
     ax.plot(ends, ends, color=INK, linewidth=0.8, zorder=3)
     ax.set(
         xlabel="Predicted from the others (mW/m²)", ylabel="Heat flow of the well (mW/m²)",
-        title="Heat flow", xlim=ends, ylim=ends, aspect="equal",
+        title="Heat flow", xlim=ends, ylim=ends, aspect="equal", anchor="SW",
     )  # fmt: skip
     return as_panel(figure, "Heat flow of wells against the prediction from the others")
 
@@ -211,8 +210,9 @@ def _coverage(contents: Contents) -> Panel:
             INTERVALS, inside, linestyle=":", marker=MARKERS[i], color=COLOURS[i], markersize=5,
             label=title,
         )  # fmt: skip
-    ax.set(xlim=(40, 100), ylim=(40, 100), aspect="equal", title="Are the intervals right?")
+    ax.set(xlim=(40, 100), ylim=(40, 100), aspect="equal", anchor="SW")
     ax.set(xlabel="Stated interval (%)", ylabel="Errors inside it (%)")
+    ax.set_title("Are the intervals right?")
     legend_below(figure)
     return as_panel(figure, "Share of errors inside the stated intervals")
 

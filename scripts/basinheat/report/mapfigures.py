@@ -48,7 +48,9 @@ def value_figure(name: str, contents: Contents, ends: dict[str, tuple[float, flo
     figure, ax = _map(contents)
     low, high = ends[what.family]
     values = _thin(contents, contents.maps[name])
-    image = _paint(ax, contents, values, mpl.colormaps[style.ramp(what.family)], vmin=low, vmax=high)
+    image = _paint(
+        ax, contents, values, mpl.colormaps[style.ramp(what.family)], vmin=low, vmax=high
+    )
     _hatch(ax, contents, _thin(contents, basis.below_readings(stem, contents)) > _YES)
     if what.is_value:
         _contours(ax, contents, values, what, ends)
@@ -93,7 +95,9 @@ def trust_picture(contents: Contents) -> Picture:
 def _pair(name: str, contents: Contents, ends: dict[str, tuple[float, float]]) -> Picture:
     what = quantity(name, contents.about)
     panels: list[Panel] = [
-        as_panel(value_figure(column, contents, ends), f"Map: {quantity(column, contents.about).label}")
+        as_panel(
+            value_figure(column, contents, ends), f"Map: {quantity(column, contents.about).label}"
+        )
         for column in (name, f"{name}_std")
     ]
     return Picture(name, what.label, captions.of_map(what, contents.about), panels)
@@ -234,9 +238,7 @@ def _wells(ax: Any, contents: Contents) -> None:
         )  # fmt: skip
 
 
-def _classes(
-    contents: Contents, values: Any, edges: list[float], ramp: str, label: str
-) -> Figure:
+def _classes(contents: Contents, values: Any, edges: list[float], ramp: str, label: str) -> Figure:
     """Draw values in classes, with wells."""
     import matplotlib as mpl
     from matplotlib.colors import BoundaryNorm, ListedColormap
@@ -244,9 +246,7 @@ def _classes(
     count = len(edges) - 1
     colours = ListedColormap(mpl.colormaps[ramp](np.linspace(0.08, 0.92, count)))
     figure, ax = _map(contents)
-    image = _paint(
-        ax, contents, _thin(contents, values), colours, norm=BoundaryNorm(edges, count)
-    )
+    image = _paint(ax, contents, _thin(contents, values), colours, norm=BoundaryNorm(edges, count))
     _wells(ax, contents)
     bar = figure.colorbar(image, cax=_bar_axes(figure, ax), spacing="uniform")
     bar.set_label(label)

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import itertools
+
 import numpy as np
 import pandas as pd
 
@@ -95,7 +97,7 @@ def by_depth_sheet(contents: Contents) -> Sheet:
     table = contents.crossval_temperature
     edges = [0.0, *contents.depths_m, np.inf]
     rows = []
-    for top, base in zip(edges[:-1], edges[1:], strict=True):
+    for top, base in itertools.pairwise(edges):
         part = table[table["depth_m"].between(top, base, inclusive="left")]
         title = f"{top:,.0f} to {base:,.0f}" if np.isfinite(base) else f"below {top:,.0f}"
         rows.append([title, *_errors(part)])

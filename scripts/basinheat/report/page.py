@@ -53,6 +53,7 @@ def html(contents: Contents) -> str:
         short_caution=cautions.SHORT,
         cautions=cautions.CAUTIONS,
         order=[captions.of_method(name) for name in contents.about.methods],
+        how=_how(contents.settings),
         settings=_settings(contents.settings),
         key_figures=overview.key_figures(contents),
         attention=attention.points(contents),
@@ -96,6 +97,17 @@ def _sheets(contents: Contents) -> dict[str, sheet.Sheet]:
     }
     sheets = {name: make(contents) for name, make in made.items()}
     return {**sheets, "versions": summary.versions_sheet(contents.versions)}
+
+
+def _how(settings: dict[str, Any]) -> dict[str, Any]:
+    """Return the choices that change how the method is told."""
+    kriging = settings["kriging"]
+    return {
+        "temperature_law": settings["conductivity"]["temperature_law"],
+        "engine": kriging["engine"],
+        "drift": kriging["drift"],
+        "pinned": kriging["variogram"]["pinned"],
+    }
 
 
 def _settings(settings: dict[str, Any]) -> str:

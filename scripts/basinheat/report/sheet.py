@@ -8,7 +8,7 @@ from typing import Any
 
 import numpy as np
 
-LONGEST = 240  # characters of a cell: a name of 10,000 would bury the page
+LONGEST = 400  # characters of a cell: a name of 10,000 would bury the page
 # Characters that do not show and change what stands beside them: controls, marks of direction,
 # zero-width and line separators (Unicode 15, categories Cc, Cf, Zl, Zp; from memory).
 _HIDDEN = re.compile(

@@ -108,7 +108,7 @@ def sources_sheet(contents: Contents) -> Sheet:
     rows = [
         [
             captions.of_source(row.source),
-            row.unit,
+            "ln" if row.unit.startswith("ln") else row.unit,
             f"0 ± {row.prior_std:.3g}",
             f"{row.mean:+.2g} ± {row.std:.2g}".replace("-", "−"),
             number(row.mean / row.prior_std, 1, sign=True) if row.prior_std > 0 else "–",

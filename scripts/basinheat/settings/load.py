@@ -89,16 +89,15 @@ def merged(base: Any, overlay: Any) -> Any:
     return {**base, **overlay, **both}
 
 
-def _plain(raw: Mapping[str, Any]) -> dict[str, Any]:
+def _plain(raw: Any) -> Any:
     """Return the config as plain dicts, their keys sorted; an empty section means its defaults.
 
     Sorted, so that the order in which a config is written changes neither jobs nor bytes.
     """
-    plain = {str(key): value for key, value in raw.items() if value is not None}
-    return {
-        key: _plain(value) if isinstance(value, Mapping) else value
-        for key, value in sorted(plain.items())
-    }
+    if isinstance(raw, Mapping):
+        filled = {str(key): _plain(value) for key, value in raw.items() if value is not None}
+        return dict(sorted(filled.items()))
+    return [_plain(value) for value in raw] if isinstance(raw, list) else raw
 
 
 def _overlays(plain: dict[str, Any], faults: list[str]) -> dict[str, dict[str, Any]]:

@@ -59,6 +59,7 @@ conductivity:
   lithologies: {{salt: halite}}
 maps:
   cell_size_m: {cell_size_m}
+  mask: {{max_distance_km: 20}}
   depths_m: {depths_m}
   isotherms_degc: {isotherms_degc}
 """
