@@ -59,14 +59,13 @@ rule all:
         ),
 
 
+# Read and screen only: what was kept and what was refused, before anything is mapped.
 rule first_look:
     input:
-        expand(
-            "results/{run}/{scenario}/delivery/rasters",
-            run=BASE.run,
-            scenario=SETTINGS,
-        ),
+        expand("results/{run}/wells/rejected.csv", run=BASE.run),
 
 
 onsuccess:
-    print(f"Done: {nearby(Path.cwd() / 'results' / BASE.run)}")
+    results = Path.cwd() / "results" / BASE.run
+    places = [results / "wells", *(results / name / "delivery" for name in SETTINGS)]
+    print("Done. Look at:", *(nearby(place) for place in places if place.exists()), sep="\n  ")

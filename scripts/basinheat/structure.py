@@ -64,7 +64,7 @@ def fit_structure(
         experimental = _pooled([i.experimental(edges) for i in intervals])
         covariance = _closest(experimental, models)
         left_out = [i.left_out(covariance) for i in intervals]
-        level = float(np.clip(np.mean(np.concatenate(left_out) ** 2), *LEVELS))
+        level = _level(np.concatenate(left_out))
         covariance = replace(
             covariance, sill=covariance.sill * level, nugget=covariance.nugget * level
         )
@@ -132,7 +132,7 @@ def _pooled(parts: list[Experimental]) -> Experimental:
     gamma = np.concatenate([p.gamma for p in parts])
     pairs = np.concatenate([p.pairs for p in parts]).astype(float)
     order = np.argsort(lags, kind="stable")
-    bins = np.array_split(order, min(LAGS, len(order)))
+    bins = np.array_split(order, max(1, min(LAGS, len(order))))
     weight = [max(pairs[b].sum(), 1.0) for b in bins]
     return Experimental(
         np.array([(lags[b] * pairs[b]).sum() / w for b, w in zip(bins, weight, strict=True)]),
@@ -159,6 +159,12 @@ def _closest(experimental: Experimental, models: tuple[str, ...]) -> Covariance:
         return float((experimental.pairs * (experimental.gamma / fitted - 1.0) ** 2).sum())
 
     return min((variogram.fit_wls(experimental, m) for m in models), key=misfit)
+
+
+def _level(left_out: Floats) -> float:
+    """Mean square of the standardised errors, 1 where no well can be left out."""
+    known = left_out[np.isfinite(left_out)]
+    return float(np.clip(np.mean(known**2), *LEVELS)) if len(known) else 1.0
 
 
 def _vertical_length(errors: list[pd.Series]) -> float:

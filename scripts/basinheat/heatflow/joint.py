@@ -38,8 +38,8 @@ class Basin:
     temperature, ``resistance_std`` (n,) m2 K/mW, ``scale_class`` (n,) int. Wells: ``xy`` (w, 2) m.
     ``change`` (n, v) m2 K/mW: of resistance per unit amplitude of v rock sources. ``ln_std`` (k,)
     sigma of ln k of each lithology; ``surface_shift`` (m,) K: change of the surface temperature per
-    unit amplitude of each temperature source; ``production_std``: sigma of the level of heat
-    production. Amplitudes are ordered m, k, v, and heat production.
+    unit amplitude of each temperature source; ``production_std`` (p,): sigma of the level of heat
+    production, p 0 or 1. Amplitudes are ordered m, k, v, p.
     """
 
     well: Ints
@@ -59,7 +59,7 @@ class Basin:
     xy: Floats
     ln_std: Floats
     surface_shift: Floats
-    production_std: float
+    production_std: Floats
 
     def of_wells(self, wells: Ints) -> Basin:
         """Return the rows of some wells, renumbered."""
@@ -111,7 +111,7 @@ def column_of(basin: Basin, rock: Floats, regional: float, scales: Floats) -> Co
                 basin.loadings + basin.surface_shift,
                 conductivity,
                 regional * basin.change,
-                -basin.production_std * below,
+                -np.outer(below, basin.production_std),
             ]
         ),
         variance=basin.std**2 * scale,
@@ -158,7 +158,9 @@ def fit_joint(
     search = _Search(sample, models, pinned, regional, trend)
     rock = np.zeros(n_rock)
     for turn in range(TURNS):
-        offset = np.concatenate([np.zeros(n_temperature), rock, [0.0]])
+        offset = np.concatenate(
+            [np.zeros(n_temperature), rock, np.zeros(len(basin.production_std))]
+        )
         if turn < TURNS - 1:
             search.run(rock, regional, -offset)
         covariance, scales = search.covariance(), search.scales()

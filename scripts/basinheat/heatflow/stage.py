@@ -178,7 +178,7 @@ def _basin(
         surface_shift=np.where(
             temperature_sources["source"] == SURFACE, temperature_sources["prior_std"], 0.0
         ),
-        production_std=float(sources["prior_std"][sources["source"] == PRODUCTION].sum()),
+        production_std=sources["prior_std"][sources["source"] == PRODUCTION].to_numpy(),
     ), classes.tolist()
 
 
