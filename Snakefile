@@ -9,6 +9,7 @@ from pathlib import Path
 ROOT = Path(workflow.basedir)
 sys.path.insert(0, str(ROOT / "scripts"))
 
+from basinheat.mapnames import map_names, raster_files
 from basinheat.provenance import code_digest, code_digests
 from basinheat.settings.files import (
     data_files,
@@ -36,6 +37,7 @@ SETTINGS = load_or_exit(
 # What rules take as params: plain values, so that Snakemake can compare them with the last run's.
 SECTIONS = {name: with_paths(settings, FOLDER) for name, settings in SETTINGS.items()}
 BASE = SETTINGS["base"]
+RASTERS = raster_files(map_names(BASE.maps.depths_m, BASE.maps.isotherms_degc))
 
 
 wildcard_constraints:
@@ -67,5 +69,12 @@ rule first_look:
 
 onsuccess:
     results = Path.cwd() / "results" / BASE.run
-    places = [results / "wells", *(results / name / "delivery" for name in SETTINGS)]
-    print("Done. Look at:", *(nearby(place) for place in places if place.exists()), sep="\n  ")
+    places = [
+        results / "wells",
+        *(results / name / "delivery" for name in SETTINGS),
+    ]
+    print(
+        "Done. Look at:",
+        *(nearby(place) for place in places if place.exists()),
+        sep="\n  ",
+    )

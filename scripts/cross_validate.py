@@ -14,6 +14,7 @@ mapped = validation.Mapped(
     structure_model=documents.load(snakemake.input.structure_model),
     sources=tables.Sources.load(snakemake.input.sources),
     source_covariance=tables.SourceCovariance.load(snakemake.input.source_covariance),
+    trend=snakemake.params.drift,
 )
 judged = validation.cross_validate(
     mapped,

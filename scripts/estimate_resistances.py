@@ -1,7 +1,8 @@
 """Find the thermal resistance of the rock above every temperature."""
 
-from basinheat import resistances, tables
+from basinheat import tables
 from basinheat.logs import log_to
+from basinheat.rock import resistances
 from basinheat.settings.heat import Conductivity, HeatFlow
 
 log_to(snakemake.log[0])

@@ -1,5 +1,7 @@
 """Write the maps as rasters."""
 
+from pathlib import Path
+
 from basinheat import tables
 from basinheat.delivery import raster
 from basinheat.delivery.metadata import About
@@ -11,4 +13,4 @@ log_to(snakemake.log[0])
 about = About.of(Settings(**snakemake.params.settings), snakemake.wildcards.scenario)
 maps = tables.Maps.load(snakemake.input.maps)
 grid = Grid.from_json(snakemake.input.grid)
-raster.write_all(maps, grid, snakemake.output.rasters, about)
+raster.write_all(maps, grid, Path(snakemake.output.rasters[0]).parent, about)

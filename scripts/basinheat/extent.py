@@ -9,6 +9,7 @@ import numpy as np
 import pandas as pd
 
 from basinheat.errors import UserError
+from basinheat.projection import crs_fault
 
 if TYPE_CHECKING:
     from basinheat.grid import Grid
@@ -26,23 +27,9 @@ def check_crs(crs: str) -> None:
     UserError
         Unknown, geographic, or not in metres.
     """
-    from pyproj import CRS
-    from pyproj.exceptions import CRSError
-
-    try:
-        parsed = CRS.from_user_input(crs)
-    except CRSError:
-        raise UserError(f'crs: "{crs}" is not a CRS. Write a code such as EPSG:32631.') from None
-    if not parsed.is_projected:
-        raise UserError(
-            f'crs: "{crs}" ({parsed.name}) is not projected: cells would not be squares. Choose a '
-            "projected CRS in metres, such as the UTM zone of the basin."
-        )
-    units = sorted({axis.unit_name for axis in parsed.axis_info[:2]})
-    if units != ["metre"]:
-        raise UserError(
-            f'crs: "{crs}" ({parsed.name}) is in {" and ".join(units)}. Choose one in metres.'
-        )
+    fault = crs_fault(crs, for_maps=True)
+    if fault:
+        raise UserError(f"crs: {fault}")
 
 
 def find(wells: pd.DataFrame, maps: Maps, crs: str) -> tuple[Bounds, Any]:

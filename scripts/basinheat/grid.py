@@ -166,7 +166,10 @@ def _with_readings(wells: pd.DataFrame, readings: pd.DataFrame, holdout: list[st
     deepest = readings.groupby("well")["depth_m"].max().rename("deepest_m")
     basis = wells[~wells["well"].isin(holdout)].merge(deepest, on="well", how="inner")
     if basis.empty:
-        raise UserError("no well has a usable reading: there is nothing to map. See the rejects.")
+        raise UserError(
+            "no well has a usable reading, there is nothing to map. "
+            "rejected.csv in the folder wells of the results says what was refused and why."
+        )
     return basis.sort_values("well", ignore_index=True)
 
 

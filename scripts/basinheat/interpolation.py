@@ -6,7 +6,7 @@ from typing import Any
 
 import pandas as pd
 
-from basinheat.geostat.engine_global import GlobalKriging
+from basinheat.geostat.engines import engine_class
 from basinheat.geostat.models import Covariance
 
 
@@ -38,9 +38,14 @@ def krige_heat_flow(
     DataFrame
         HeatFlowGrid.
     """
-    krige = heat_flow_engine(points, information, fitted, engine, trend)
-    prediction = krige.predict(cells[["easting_m", "northing_m"]].to_numpy())
-    cross = {f"cross_{s}": prediction.cross[:, i] for i, s in enumerate(information["source"])}
+    solved = heat_flow_engine(points, information, fitted, engine, trend)
+    return predict_heat_flow(solved, information["source"], cells)
+
+
+def predict_heat_flow(engine: Any, sources: pd.Series, cells: pd.DataFrame) -> pd.DataFrame:
+    """Predict heat flow at cells with an engine that is solved; a HeatFlowGrid."""
+    prediction = engine.predict(cells[["easting_m", "northing_m"]].to_numpy())
+    cross = {f"cross_{name}": prediction.cross[:, i] for i, name in enumerate(sources)}
     return pd.DataFrame(
         {
             "row": cells["row"].to_numpy(),
@@ -61,7 +66,7 @@ def heat_flow_engine(
 ) -> Any:
     """Return the kriging engine of heat flow, solved for the wells' values."""
     names = information["source"]
-    return _engine(engine)(
+    return engine_class(engine)(
         points[["easting_m", "northing_m"]].to_numpy(),
         Covariance.from_dict(fitted["covariance"]),
         points["value_std"].to_numpy() ** 2,
@@ -70,12 +75,3 @@ def heat_flow_engine(
         prior_mean=information["mean"].to_numpy(),
         prior_covariance=information[[f"covariance_{name}" for name in names]].to_numpy(),
     ).solve(points["value"].to_numpy())
-
-
-def _engine(name: str) -> type:
-    """Return the engine's class; PyKrige is loaded only where it is asked for."""
-    if name != "pykrige":
-        return GlobalKriging
-    from basinheat.geostat.engine_pykrige import PyKrigeKriging
-
-    return PyKrigeKriging

@@ -6,7 +6,7 @@ import numpy as np
 import pandas as pd
 from numpy.typing import NDArray
 
-from basinheat.delivery.metadata import STATUS
+from basinheat.mapnames import isotherm_name, temperature_name
 from basinheat.rebuild import (
     Columns,
     HeatFlow,
@@ -16,11 +16,12 @@ from basinheat.rebuild import (
     isotherm_depths,
     rebuild_columns,
 )
+from basinheat.tables.maps import STATUS
+from basinheat.tables.sources import LITHOLOGY, PRODUCTION, ROCK, SURFACE
 
 Floats = NDArray[np.float64]
 
 BLOCK = 20_000  # cells at once: bounds memory whatever the grid
-SURFACE, PRODUCTION = "surface_temperature", "rock:heat_production"
 
 
 def derive(
@@ -79,7 +80,7 @@ def shared_sources(sources: pd.DataFrame, source_covariance: pd.DataFrame) -> So
         covariance=source_covariance[[f"covariance_{name}" for name in names]].to_numpy(),
         surface_shift=np.where(names == SURFACE, sources["prior_std"], 0.0),
         production_share=np.where(names == PRODUCTION, sources["prior_std"], 0.0),
-        rock=np.flatnonzero(names.str.startswith(("conductivity:", "rock:"))),
+        rock=np.flatnonzero(names.str.startswith((LITHOLOGY, ROCK))),
     )
 
 
@@ -152,12 +153,13 @@ def _read_maps(
         "gradient_std": rise_std / reference_depth_m * 1e3,
     }
     for i, depth in enumerate(depths):
-        maps[f"temperature_{depth:g}m"] = temperature[:, i]
-        maps[f"temperature_{depth:g}m_std"] = std[:, i]
+        name = temperature_name(depth)
+        maps[name], maps[f"{name}_std"] = temperature[:, i], std[:, i]
     too_deep = np.zeros(len(cells), bool)
     for degc in isotherms_degc:
         depth, depth_std = isotherm_depths(columns, degc)
-        maps[f"isotherm_{degc:g}c"], maps[f"isotherm_{degc:g}c_std"] = depth, depth_std
+        name = isotherm_name(degc)
+        maps[name], maps[f"{name}_std"] = depth, depth_std
         too_deep |= columns.temperature[:, -1] < degc
     extrapolated = cells["deepest_reading_m"].to_numpy() < depths.max()
     maps["status"] = np.select(

@@ -13,7 +13,6 @@ from basinheat.errors import UserError
 
 Array = NDArray[np.float64]
 WGS84 = "EPSG:4326"
-BALLPARK_M = 150.0  # what a datum shift left out may amount to (common practice, no source)
 
 _log = logging.getLogger(__name__)
 
@@ -41,6 +40,24 @@ class Projected:
     def ballpark(self) -> NDArray[np.bool_]:
         """Tell where no datum shift was at hand."""
         return np.isfinite(self.x) & ~np.isfinite(self.accuracy_m)
+
+
+def crs_fault(crs: str, for_maps: bool = False) -> str:
+    """Return what is wrong with a CRS, "" for nothing; maps need one in which cells are squares."""
+    from pyproj import CRS
+    from pyproj.exceptions import CRSError
+
+    try:
+        known = CRS.from_user_input(crs)
+    except CRSError:
+        return f'"{crs}" is no coordinate reference system; write it like EPSG:32631'
+    if not for_maps:
+        return ""
+    way_out = "maps need a projected one in metres, such as the UTM zone of the wells (EPSG:32631)"
+    if not known.is_projected:
+        return f"{crs} is {known.name}, which is not projected; {way_out}"
+    units = sorted({axis.unit_name for axis in known.axis_info[:2]})
+    return "" if units == ["metre"] else f"{crs} counts in {' and '.join(units)}; {way_out}"
 
 
 def project(x: Array, y: Array, source: str, target: str) -> Projected:

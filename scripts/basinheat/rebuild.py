@@ -124,7 +124,9 @@ def rebuild_columns(
             # heat made above leaves the flux, so it cools what is below
             cooling = (heat_flow.value - step.flow) * step.resistance * half
             to_sources -= np.outer(cooling, sources.production_share)
-            to_sources[:, sources.rock] -= (step.rise * half)[:, None] * structure.loadings[:, i - 1]
+            to_sources[:, sources.rock] -= (step.rise * half)[:, None] * structure.loadings[
+                :, i - 1
+            ]
             error = step.rise * half * np.sqrt(structure.variance[:, i - 1])
             tie = structure.vertical_correlation[i - 1] * own_next
             own = carry**2 * own + 2 * carry * error * tie + error**2
@@ -148,7 +150,9 @@ class _Step:
         level = 1.0 + sources.production_share @ sources.mean
         self.loss = level * structure.heat_production[:, i] * h * 1e-3
         self.flow = flow - 0.5 * self.loss
-        base = structure.ln_conductivity[:, i] + structure.loadings[:, i] @ sources.mean[sources.rock]
+        base = (
+            structure.ln_conductivity[:, i] + structure.loadings[:, i] @ sources.mean[sources.rock]
+        )
         slope = structure.temperature_slope[:, i]
         middle = top
         for _ in range(FIXED_POINT_STEPS):

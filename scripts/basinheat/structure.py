@@ -21,6 +21,7 @@ LAGS = 12
 FEWEST_PAIRS = 30  # common practice for a single lag (Journel & Huijbregts 1978)
 UNTOLD = Covariance("matern15", 0.15**2, 50_000.0)  # common practice, no source
 LEVELS = (0.5, 4.0)  # leave-one-out may change the fitted level by so much
+TOLD = 0.1  # share of their error variance below which values can't have erred independently
 GROUP_M = 1000.0  # intervals of a kilometre share one covariance: a quarter of the pairs each
 CARRIED = ["heat_production_uw_m3", "reference_temperature_degc", "temperature_slope_per_k"]
 BELOW_SLOPE_PER_K = -0.0009  # Vosteen & Schellschmidt (2003), sediments, k 3 W/(m K), near 100 degC
@@ -62,16 +63,20 @@ def fit_structure(
             continue
         intervals = [_Interval.of(frame) for _, frame in group.groupby("top_m", sort=True)]
         experimental = _pooled([i.experimental(edges) for i in intervals])
-        covariance = _closest(experimental, models)
-        left_out = [i.left_out(covariance) for i in intervals]
-        level = _level(np.concatenate(left_out))
-        covariance = replace(
-            covariance, sill=covariance.sill * level, nugget=covariance.nugget * level
-        )
-        errors += [
-            pd.Series(e / np.sqrt(level), index=i.wells, name=i.top)
-            for i, e in zip(intervals, left_out, strict=True)
-        ]
+        if all(i.assumed for i in intervals):
+            # what is not known of the rock at a well is not known between wells either
+            covariance, level = _all_nugget(intervals), 1.0
+        else:
+            covariance = _closest(experimental, models)
+            left_out = [i.left_out(covariance) for i in intervals]
+            level = _level(np.concatenate(left_out))
+            covariance = replace(
+                covariance, sill=covariance.sill * level, nugget=covariance.nugget * level
+            )
+            errors += [
+                pd.Series(e / np.sqrt(level), index=i.wells, name=i.top)
+                for i, e in zip(intervals, left_out, strict=True)
+            ]
         groups.append(
             {
                 "top_m": float(group["top_m"].min()),
@@ -110,6 +115,11 @@ class _Interval:
             frame["value_std"].to_numpy() ** 2,
         )
 
+    @property
+    def assumed(self) -> bool:
+        """Whether one rock was assumed for all wells: values far closer than errors allow."""
+        return len(self.value) > 1 and self.value.var() < TOLD * self.error.mean()
+
     def experimental(self, edges: Floats) -> Experimental:
         return variogram.experimental(self.xy, self.value, self.error, bins=edges)
 
@@ -117,7 +127,7 @@ class _Interval:
         """Standardised leave-one-out errors."""
         engine = GlobalKriging(self.xy, covariance, self.error).solve(self.value)
         predicted, variance = engine.leave_one_out()
-        return (self.value - predicted) / np.sqrt(variance)
+        return (predicted - self.value) / np.sqrt(variance)
 
 
 def _lags(points: pd.DataFrame) -> Floats:
@@ -159,6 +169,12 @@ def _closest(experimental: Experimental, models: tuple[str, ...]) -> Covariance:
         return float((experimental.pairs * (experimental.gamma / fitted - 1.0) ** 2).sum())
 
     return min((variogram.fit_wls(experimental, m) for m in models), key=misfit)
+
+
+def _all_nugget(intervals: list[_Interval]) -> Covariance:
+    """The wells' own error variance as that of every place."""
+    variance = float(np.mean(np.concatenate([i.error for i in intervals])))
+    return replace(UNTOLD, sill=0.0, nugget=variance)
 
 
 def _level(left_out: Floats) -> float:
@@ -208,27 +224,32 @@ def krige_conductivity(
     by_top = dict(tuple(points.groupby("top_m")))
     wells_per_interval = enough(points, wells_per_interval)
     names = sorted(c for c in points.columns if c.startswith("loading_"))
-    frames, deepest_known = [], 0.0
-    for top in np.arange(0.0, deepest_m, interval_m):
-        base = min(top + interval_m, deepest_m)
+    columns = ["ln_conductivity", *CARRIED, *names, "variance"]
+    tops = np.arange(0.0, deepest_m, interval_m)
+    # a column apart for each quantity, by cell and interval: no sorting, no second copy
+    values = {name: np.empty((len(cells), len(tops))) for name in columns}
+    deepest_known = 0.0
+    for i, top in enumerate(tops):
         frame = by_top.get(top)
-        if frame is not None and len(frame) >= wells_per_interval and base - top == interval_m:
-            values, variance = _krige_interval(frame, _covariance_at(fitted, top), xy, names)
-            deepest_known = base
+        whole = top + interval_m <= deepest_m
+        if frame is not None and len(frame) >= wells_per_interval and whole:
+            kriged, variance = _krige_interval(frame, _covariance_at(fitted, top), xy, names)
+            deepest_known = top + interval_m
         else:
-            values, variance = _below(below, top, deepest_known, len(xy), len(names))
-        columns = ["ln_conductivity", *CARRIED, *names]
-        frames.append(
-            pd.DataFrame(values, columns=columns).assign(
-                row=cells["row"].to_numpy(),
-                col=cells["col"].to_numpy(),
-                top_m=top,
-                base_m=base,
-                variance=variance,
-            )
-        )
-    grid = pd.concat(frames, ignore_index=True)
-    return grid.sort_values(["row", "col", "top_m"], kind="stable", ignore_index=True)
+            kriged, variance = _below(below, top, deepest_known, len(xy), len(names))
+        for name, column in zip(columns, [*kriged.T, variance], strict=True):
+            values[name][:, i] = column
+    n = len(tops)
+    return pd.DataFrame(
+        {
+            "row": np.repeat(cells["row"].to_numpy(), n),
+            "col": np.repeat(cells["col"].to_numpy(), n),
+            "top_m": np.tile(tops, len(cells)),
+            "base_m": np.tile(np.minimum(tops + interval_m, deepest_m), len(cells)),
+            **{name: array.ravel() for name, array in values.items()},
+        },
+        copy=False,
+    )
 
 
 def _covariance_at(fitted: dict[str, Any], top: float) -> Covariance:

@@ -56,8 +56,13 @@ def at_wells(
     Raises
     ------
     UserError
-        When wells are left without a temperature.
+        When there are no wells, or wells are left without a temperature.
     """
+    if wells.empty:
+        raise UserError(
+            "no well is left to map: rejected.csv in the folder wells of the results says why each "
+            "was refused. Check the files of inputs.wells, their columns and crs."
+        )
     out = wells.copy()
     place = _Place(
         out["easting_m"].to_numpy(float),

@@ -13,7 +13,7 @@ from basinheat.geostat import crossvalidation
 from basinheat.geostat.engine_global import GlobalKriging
 from basinheat.geostat.models import Covariance
 from basinheat.geostat.scores import scores
-from basinheat.interpolation import heat_flow_engine, krige_heat_flow
+from basinheat.interpolation import heat_flow_engine, predict_heat_flow
 from basinheat.products import rebuild, shared_sources
 from basinheat.rebuild import Columns, at_depths
 from basinheat.settings.heat import Conductivity
@@ -25,7 +25,7 @@ Floats = NDArray[np.float64]
 
 @dataclass(frozen=True)
 class Mapped:
-    """Everything the maps were made from, as loaded."""
+    """Everything the maps were made from, as loaded; ``trend`` is the setting kriging.drift."""
 
     points: pd.DataFrame
     information: pd.DataFrame
@@ -34,6 +34,7 @@ class Mapped:
     structure_model: dict[str, Any]
     sources: pd.DataFrame
     source_covariance: pd.DataFrame
+    trend: str = "none"
 
 
 @dataclass(frozen=True)
@@ -65,8 +66,14 @@ def cross_validate(
     Judged
         Tables CrossValidation and Closure, and scores by name.
     """
-    heat_flow, judged = _judge_heat_flow(mapped, validation)
-    temperature = _judge_temperature(mapped, temperatures, wells, conductivity, maps)
+    engine = heat_flow_engine(
+        mapped.points, mapped.information, mapped.heat_flow_model, "global", mapped.trend
+    )
+    left_out = engine.leave_one_out()
+    heat_flow, judged = _judge_heat_flow(mapped, validation, engine, left_out)
+    temperature = _judge_temperature(
+        mapped, temperatures, wells, conductivity, maps, engine, left_out
+    )
     judged["temperature_closure"] = _scores_of(temperature, "residual_k")
     judged["temperature_left_out"] = _scores_of(temperature, "left_out_k")
     held = temperature["well"].isin(validation.holdout)
@@ -76,14 +83,12 @@ def cross_validate(
 
 
 def _judge_heat_flow(
-    mapped: Mapped, validation: Validation
+    mapped: Mapped, validation: Validation, engine: GlobalKriging, left_out: tuple[Floats, Floats]
 ) -> tuple[pd.DataFrame, dict[str, Any]]:
     points = mapped.points
     xy = points[["easting_m", "northing_m"]].to_numpy()
     value = points["value"].to_numpy()
-    engine = heat_flow_engine(points, mapped.information, mapped.heat_flow_model, "global")
-    predicted, variance = engine.leave_one_out()
-    std = np.sqrt(variance)
+    predicted, std = left_out[0], np.sqrt(left_out[1])
     size = validation.block_range_share * mapped.heat_flow_model["covariance"]["range_m"]
     fold = crossvalidation.blocks(xy, size)
     block_predicted, block_variance = engine.leave_block_out(fold)
@@ -99,8 +104,8 @@ def _judge_heat_flow(
         }
     )
     return table, {
-        "heat_flow_left_out": scores(value - predicted, std),
-        "heat_flow_block_left_out": scores(value - block_predicted, np.sqrt(block_variance)),
+        "heat_flow_left_out": scores(predicted - value, std),
+        "heat_flow_block_left_out": scores(block_predicted - value, np.sqrt(block_variance)),
         "heat_flow_baselines_rmse": crossvalidation.baselines(
             xy, value, neighbours=validation.neighbours
         ),
@@ -120,13 +125,13 @@ def _judge_temperature(
     wells: pd.DataFrame,
     conductivity: Conductivity,
     maps: Maps,
+    engine: GlobalKriging,
+    left_out: tuple[Floats, Floats],
 ) -> pd.DataFrame:
     """Rebuild the column of every well, with and without the well itself."""
     wells = wells[wells["well"].isin(temperatures["well"])].sort_values("well")
     cells = wells.assign(row=np.arange(len(wells)), col=0).reset_index(drop=True)
-    heat_flow = krige_heat_flow(
-        mapped.points, mapped.information, mapped.heat_flow_model, cells
-    )
+    heat_flow = predict_heat_flow(engine, mapped.information["source"], cells)
     structure = krige_conductivity(
         mapped.structure,
         mapped.structure_model,
@@ -137,13 +142,13 @@ def _judge_temperature(
         conductivity.below_layers,
     )
     kept = _rebuilt(cells, heat_flow, structure, mapped)
-    left_out = _rebuilt(
+    without = _rebuilt(
         cells,
-        _heat_flow_left_out(heat_flow, cells, mapped),
+        _heat_flow_left_out(heat_flow, cells, mapped, engine, left_out),
         _structure_left_out(structure, cells, mapped, conductivity.wells_per_interval),
         mapped,
     )
-    return _residuals(temperatures, cells, kept, left_out)
+    return _residuals(temperatures, cells, kept, without)
 
 
 def _rebuilt(
@@ -155,12 +160,15 @@ def _rebuilt(
 
 
 def _heat_flow_left_out(
-    heat_flow: pd.DataFrame, cells: pd.DataFrame, mapped: Mapped
+    heat_flow: pd.DataFrame,
+    cells: pd.DataFrame,
+    mapped: Mapped,
+    engine: GlobalKriging,
+    left_out: tuple[Floats, Floats],
 ) -> pd.DataFrame:
     """Heat flow at each mapped well from the others; held-out wells keep what the map says."""
     points, names = mapped.points, mapped.information["source"]
-    engine = heat_flow_engine(points, mapped.information, mapped.heat_flow_model, "global")
-    predicted, variance = engine.leave_one_out()
+    predicted, variance = left_out
     loadings = points[[f"loading_{name}" for name in names]].to_numpy()
     mean, covariance = engine.amplitudes()
     signal = predicted - loadings @ mean

@@ -49,7 +49,7 @@ def measure(arguments: argparse.Namespace) -> dict:
     sys.path.insert(0, str(Path(__file__).parents[2] / "scripts"))
     import numpy as np
 
-    from basinheat.geostat.engines import ENGINES as OURS
+    from basinheat.geostat.engines import engine_class
     from basinheat.geostat.models import Covariance
 
     rng = np.random.default_rng(1)
@@ -58,7 +58,7 @@ def measure(arguments: argparse.Namespace) -> dict:
     loadings = rng.normal(size=(arguments.wells, arguments.sources))
     xy0 = rng.uniform(0, SIDE_M, (arguments.cells, 2))
     covariance = Covariance("exponential", 25.0, 9e4, 4.0)
-    engine = OURS[arguments.engine]
+    engine = engine_class(arguments.engine)
     given = {"loadings": loadings} if arguments.engine == "global" else {}
     engine(xy[:50], covariance).solve(values[:50]).predict(xy0[:10])  # imports, warm caches
     start = time.perf_counter()

@@ -11,8 +11,10 @@ import rasterio
 from rasterio.shutil import copy
 
 from basinheat.delivery import cautions, raster
-from basinheat.delivery.metadata import STATUS, STATUS_CLASSES, STATUS_NODATA, About, quantity
+from basinheat.delivery.metadata import STATUS_CLASSES, STATUS_NODATA, About, quantity
 from basinheat.grid import Grid
+from basinheat.mapnames import raster_files
+from basinheat.tables.maps import STATUS
 
 
 @pytest.fixture(scope="module")
@@ -141,6 +143,11 @@ def test_map_without_any_value_is_written(folder):
     with rasterio.open(folder / "isotherm_400c.tif") as source:
         assert np.isnan(source.read(1)).all()
         assert "STATISTICS_MEAN" not in source.tags(1)
+
+
+def test_the_folder_holds_what_the_rule_promises(folder, maps):
+    names = maps.columns.drop(["row", "col"])
+    assert sorted(path.name for path in folder.iterdir()) == sorted(raster_files(names))
 
 
 def test_folder_is_replaced_whole(tmp_path, maps, grid, about):

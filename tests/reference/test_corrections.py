@@ -11,10 +11,11 @@ from basinheat.corrections import METHODS, correct
 from basinheat.corrections.forster1997 import correction_k as forster_k
 from basinheat.corrections.harrison1983 import VERTEX_M, parabola_k
 from basinheat.corrections.harrison1983 import correction_k as harrison_k
-from basinheat.corrections.horner import fit_line, horner_time
+from basinheat.corrections.horner import horner_time
 from basinheat.corrections.kehle_gregory import SUMMIT_FT, cubic_f
 from basinheat.corrections.kehle_gregory import correction_k as kehle_k
 from basinheat.corrections.response import Mud, simulate
+from basinheat.corrections.time_lines import fit_line
 from basinheat.settings.heat import Correction
 
 # Published readings: P. Glover, Petrophysics MSc course notes, Aberdeen 2000, pp. 305-306.

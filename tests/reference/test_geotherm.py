@@ -7,11 +7,11 @@ code from the closed form that is written out beside each.
 import numpy as np
 import pytest
 
-from basinheat import geotherm, rockcolumns
+from basinheat import geotherm
 from basinheat.conductivity import conditions
 from basinheat.gradient import fit_lines
-from basinheat.rockcolumns import Columns, Parts
-from basinheat.slabs import cut
+from basinheat.rock.columns import Columns, Parts, at_depths, integrate
+from basinheat.rock.slabs import cut
 
 UW = 1e-6
 
@@ -163,8 +163,8 @@ def _layered(heat_uw=(0.0, 0.0, 0.0, 0.0)):
 def test_layered_resistance_and_bullard_slope():
     """F2: h 500, 400, 600, 500 m, k 1.8, 2.5, 3.1, 2.2; noise .4, -.6, .5, -.2 K on q 65, T0 12."""
     columns, base = _layered()
-    integrals = rockcolumns.integrate(columns, np.array([12.0]), np.array([0.065]))
-    resistance, _ = rockcolumns.at_depths(columns, integrals, np.zeros(4, int), base)
+    integrals = integrate(columns, np.array([12.0]), np.array([0.065]))
+    resistance, _ = at_depths(columns, integrals, np.zeros(4, int), base)
     total = resistance.sum(1)
     # as printed in the notes; F2R2 is the third
     assert total == pytest.approx([277.778, 437.778, 631.32616, 858.599], rel=1e-6)
@@ -181,8 +181,8 @@ def test_layered_resistance_and_bullard_slope():
 def test_layered_temperature_with_heat_production():
     """F3: A 1.2, 1.0, 0.6, 1.5 uW/m3, T0 12, q 65; the flux that is left below is 62.89 mW/m2."""
     columns, base = _layered((1.2, 1.0, 0.6, 1.5))
-    integrals = rockcolumns.integrate(columns, np.array([12.0]), np.array([0.065]))
-    resistance, radiogenic = rockcolumns.at_depths(columns, integrals, np.zeros(4, int), base)
+    integrals = integrate(columns, np.array([12.0]), np.array([0.065]))
+    resistance, radiogenic = at_depths(columns, integrals, np.zeros(4, int), base)
     temperature = 12 + 0.065 * resistance.sum(1) - radiogenic.sum(1)
     assert temperature == pytest.approx([29.972222, 40.244222, 52.59648, 66.9749], rel=1e-6)
     left = 0.065 - integrals.production.sum()

@@ -61,7 +61,7 @@ def test_j4_j5_leave_one_out():
     np.testing.assert_allclose(
         variance, [7.95456, 4.5097017, 9.2412505, 7.4078146, 6.21209, 5.7407518], rtol=1e-6
     )
-    judged = scores(Y - predicted, np.sqrt(variance))
+    judged = scores(predicted - Y, np.sqrt(variance))
     assert judged["msdr"] == close(0.94789844)
     assert judged["pit_mean"] == pytest.approx(0.494, abs=5e-4)
     assert judged["crps"] == close(1.53616, 1e-5)

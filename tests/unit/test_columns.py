@@ -5,10 +5,11 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from basinheat import geotherm, regionalflow, rockcolumns, section
+from basinheat import geotherm
 from basinheat.conductivity import conditions, porosity
-from basinheat.rockcolumns import Columns, Parts
-from basinheat.slabs import cut, overlapping
+from basinheat.rock import regionalflow, section
+from basinheat.rock.columns import Columns, Parts, at_depths, integrate
+from basinheat.rock.slabs import cut, overlapping
 
 SED, SALT = conditions.LAW_NAMES.index("vosteen2003_sed"), conditions.LAW_NAMES.index("halite")
 
@@ -71,10 +72,10 @@ def test_matches_an_independent_integration():
     tops, k25, laws, phi = [0.0, 1200.0, 1900.0], [2.2, 5.7, 4.5], [SED, SALT, SED], [0.6, 0.0, 0.5]
     columns = _columns([3000.0, 3000.0], tops, k25, laws, phi, step=25.0)
     surface, flow = np.array([4.0, 15.0]), np.array([0.045, 0.080])
-    integrals = rockcolumns.integrate(columns, surface, flow)
+    integrals = integrate(columns, surface, flow)
     base = np.array([1200.0, 1900.0, 3000.0])
     well, depth = np.repeat([0, 1], 3), np.tile(base, 2)
-    resistance, radiogenic = rockcolumns.at_depths(columns, integrals, well, depth)
+    resistance, radiogenic = at_depths(columns, integrals, well, depth)
     found = surface[well] + flow[well] * resistance.sum(1) - radiogenic.sum(1)
 
     def conductivity(i, z, t):
@@ -96,16 +97,14 @@ def test_matches_an_independent_integration():
 )
 def test_resistance_adds_up_and_temperature_rises(depths, flow, phi):
     columns = _columns([3000.0], [0.0, 800.0], [2.5, 4.0], [SED, SED], [phi, phi])
-    integrals = rockcolumns.integrate(columns, np.array([10.0]), np.array([flow]))
+    integrals = integrate(columns, np.array([10.0]), np.array([flow]))
     z = np.sort(depths)
-    resistance, radiogenic = rockcolumns.at_depths(columns, integrals, np.zeros(len(z), int), z)
+    resistance, radiogenic = at_depths(columns, integrals, np.zeros(len(z), int), z)
     temperature = 10 + flow * resistance.sum(1) - radiogenic.sum(1)
     assert np.all(np.diff(temperature) > 0) and temperature[0] > 10
     assert np.all(np.diff(resistance, axis=0) >= -1e-9)
     # in each slab the temperature at the middle is that of the sums
-    middle, lost = rockcolumns.at_depths(
-        columns, integrals, columns.slabs.well, columns.slabs.middle_m
-    )
+    middle, lost = at_depths(columns, integrals, columns.slabs.well, columns.slabs.middle_m)
     assert 10 + flow * middle.sum(1) - lost.sum(1) == pytest.approx(
         integrals.temperature_degc, abs=5e-3
     )
@@ -113,9 +112,9 @@ def test_resistance_adds_up_and_temperature_rises(depths, flow, phi):
 
 def test_resistance_is_linear_in_thickness_where_rock_is_the_same():
     columns = _columns([2000.0], [0.0], [2.5], [0])
-    integrals = rockcolumns.integrate(columns, np.array([10.0]), np.array([0.06]))
+    integrals = integrate(columns, np.array([10.0]), np.array([0.06]))
     z = np.array([37.0, 370.0, 1999.0])
-    resistance, radiogenic = rockcolumns.at_depths(columns, integrals, np.zeros(3, int), z)
+    resistance, radiogenic = at_depths(columns, integrals, np.zeros(3, int), z)
     assert resistance[:, 0] == pytest.approx(z / 2.5)
     assert radiogenic[:, 0] == pytest.approx(1e-6 * z**2 / 2 / 2.5)
 
@@ -123,10 +122,10 @@ def test_resistance_is_linear_in_thickness_where_rock_is_the_same():
 def test_columns_do_not_know_each_other():
     surface, flow = np.array([3.0, 12.0]), np.array([0.05, 0.09])
     both = _columns([1000.0, 2600.0], [0.0, 700.0], [2.0, 3.5], [SED, SED], [0.5, 0.3])
-    together = rockcolumns.integrate(both, surface, flow)
+    together = integrate(both, surface, flow)
     for i, deepest in enumerate((1000.0, 2600.0)):
         one = _columns([deepest], [0.0, 700.0], [2.0, 3.5], [SED, SED], [0.5, 0.3])
-        alone = rockcolumns.integrate(one, surface[[i]], flow[[i]])
+        alone = integrate(one, surface[[i]], flow[[i]])
         mine = both.slabs.well == i
         assert together.resistance_above[mine] == pytest.approx(alone.resistance_above, rel=1e-6)
         assert together.radiogenic_above[mine] == pytest.approx(alone.radiogenic_above, rel=1e-6)
@@ -135,8 +134,7 @@ def test_columns_do_not_know_each_other():
 def test_cold_rock_conducts_better_and_resists_less():
     columns = _columns([3000.0], [0.0], [3.5], [SED])
     warm, cold = (
-        rockcolumns.integrate(columns, np.array([10.0]), np.array([q])).resistance.sum()
-        for q in (0.09, 0.03)
+        integrate(columns, np.array([10.0]), np.array([q])).resistance.sum() for q in (0.09, 0.03)
     )
     assert cold < warm
 

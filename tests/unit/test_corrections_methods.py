@@ -1,5 +1,6 @@
 """Promises that every registered method keeps, and the tests by which Horner refuses."""
 
+from dataclasses import replace
 from typing import get_args
 
 import numpy as np
@@ -13,33 +14,45 @@ from basinheat.corrections import METHODS, correct
 from basinheat.corrections.forster1997 import correction_k as forster_k
 from basinheat.corrections.gather import KINDS, gather
 from basinheat.corrections.harrison1983 import correction_k as harrison_k
-from basinheat.corrections.horner import fit_line, horner_time
+from basinheat.corrections.horner import horner_time
 from basinheat.corrections.kehle_gregory import correction_k as kehle_k
 from basinheat.corrections.method import Context
+from basinheat.corrections.time_lines import fit_line
 from basinheat.corrections.trend import RegionalTrend
-from basinheat.settings.heat import Correction, Method
+from basinheat.settings.heat import Correction, Method, Region
 
 CONTEXT = Context(
-    trend=RegionalTrend(0.03, 0.0, 4000.0), region="kansas_southeast", diffusivity_m2_s=1e-6,
+    trend=RegionalTrend(0.03, 0.0, 4000.0), region=None, diffusivity_m2_s=1e-6,
     circulation_h=4.0, circulation_factor=1.8, well_share=0.5, surface_shared_std_k=0.7,
 )  # fmt: skip
 every_method = pytest.mark.parametrize("method", METHODS.values(), ids=METHODS.keys())
 
 
-def sets_of(kind):
-    """Three sets: deep and repeated, shallower and timed, untimed."""
+def sets_of(method):
+    """Three sets at depths of the method: deep and repeated, shallower and timed, untimed."""
+    top = max(900.0, method.depth_range_m[0])
     rows = [
-        {"depth_m": 1700.0, "temperature_degc": 49.0, "since_circulation_h": 8.0},
-        {"depth_m": 1700.0, "temperature_degc": 53.0, "since_circulation_h": 14.0},
-        {"depth_m": 1200.0, "temperature_degc": 41.0, "since_circulation_h": 8.0},
-        {"depth_m": 900.0, "temperature_degc": 33.0},
+        {"depth_m": top + 800.0, "temperature_degc": 57.0, "since_circulation_h": 8.0},
+        {"depth_m": top + 800.0, "temperature_degc": 58.3, "since_circulation_h": 14.0},
+        {"depth_m": top + 300.0, "temperature_degc": 41.0, "since_circulation_h": 8.0},
+        {"depth_m": top, "temperature_degc": 33.0},
     ]
-    readings = table_of([row | {"kind": kind} for row in rows])
-    return gather(readings, wells_of("A"), Correction()).sets[kind]
+    readings = table_of([row | {"kind": method.kind} for row in rows])
+    return gather(readings, wells_of("A"), Correction()).sets[method.kind]
+
+
+def at_home(method):
+    """The context of wells in the region of the method."""
+    return replace(CONTEXT, region=method.regions[0] if method.regions else None)
 
 
 def test_the_config_knows_the_methods():
     assert set(METHODS) == set(get_args(Method))
+
+
+def test_the_regions_of_the_settings_are_those_of_the_methods():
+    known = {region for method in METHODS.values() for region in method.regions}
+    assert known == set(get_args(Region))
 
 
 @every_method
@@ -56,8 +69,8 @@ def test_what_a_method_says_of_itself(method):
 
 @every_method
 def test_what_a_method_says_of_sets(method):
-    sets = sets_of(method.kind)
-    outcome = method.estimate(sets, CONTEXT)
+    sets = sets_of(method)
+    outcome = method.estimate(sets, at_home(method))
     use = outcome.reason == 0
     assert use.any()
     assert set(outcome.reason) <= set(range(len(method.reasons) + 1))
@@ -75,8 +88,8 @@ def test_what_a_method_says_of_sets(method):
 
 @every_method
 def test_a_method_never_cools_a_reading(method):
-    sets = sets_of(method.kind)
-    outcome = method.estimate(sets, CONTEXT)
+    sets = sets_of(method)
+    outcome = method.estimate(sets, at_home(method))
     use = outcome.reason == 0
     lowest = sets.warmest_degc if method.kind == "bht" else sets.mean_degc
     assert (outcome.temperature_degc[use] >= lowest[use] - 1e-9).all()

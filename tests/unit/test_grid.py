@@ -278,8 +278,8 @@ def test_surface_temperature_from_the_wells_column(wells, readings):
     ("crs", "word"),
     [
         ("EPSG:4326", "not projected"),
-        ("EPSG:99999999", "not a CRS"),
-        ("nonsense", "not a CRS"),
+        ("EPSG:99999999", "no coordinate reference system"),
+        ("nonsense", "no coordinate reference system"),
         ("EPSG:2277", "metres"),  # Texas Central, US survey feet
     ],
 )

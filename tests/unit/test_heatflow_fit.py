@@ -3,6 +3,7 @@
 import numpy as np
 import pandas as pd
 import pytest
+
 from basinheat import heatflow, tables
 from basinheat.errors import UserError
 from basinheat.geostat.models import Covariance
@@ -31,7 +32,9 @@ def draw(seed, n_wells=70, bias=0.0, ln_k=0.0, paired=25):
         )
     )
     log = pd.DataFrame({"i": range(n_wells), "method": "horner", "loading_method:horner": BIAS_STD})
-    truth = pd.DataFrame({"i": range(paired), "method": "equilibrium", "loading_method:horner": 0.0})
+    truth = pd.DataFrame(
+        {"i": range(paired), "method": "equilibrium", "loading_method:horner": 0.0}
+    )
     rows = pd.concat([log, truth], ignore_index=True)
     depth = rng.uniform(1500.0, 3500.0, len(rows))
     resistance = depth / 2.0  # the catalogue's k
@@ -94,7 +97,7 @@ def test_pairs_tell_more_of_a_bias_than_the_spread_of_depths_does():
 
 
 def test_the_level_of_one_conductivity_cannot_be_known_from_temperatures():
-    """Heat flow and conductivity trade off: the shared sigma of heat flow keeps the prior's size."""
+    """Heat flow and conductivity trade off: the shared sigma of heat flow stays the prior's."""
     fitted, flow, _ = draw(seed=3, ln_k=0.15)
     shared = fitted.heat_flow["heat_flow_shared_std_mw_m2"] / fitted.heat_flow["heat_flow_mw_m2"]
     assert shared.median() == pytest.approx(LN_STD, rel=0.25)
@@ -117,6 +120,10 @@ def test_a_basin_of_no_wells_is_refused_in_a_line():
     rows = tables.Estimates.empty()
     with pytest.raises(UserError, match="only 0 wells"):
         heatflow.fit(
-            rows, tables.Resistances.empty(), tables.Sources.empty(), tables.Wells.empty(),
-            ("matern15",), 0.7,
+            rows,
+            tables.Resistances.empty(),
+            tables.Sources.empty(),
+            tables.Wells.empty(),
+            ("matern15",),
+            0.7,
         )

@@ -2,6 +2,7 @@
 
 import numpy as np
 import pytest
+
 from basinheat.geostat.engine_global import GlobalKriging
 from basinheat.geostat.models import Covariance
 from basinheat.heatflow.reduction import Column, amplitudes_within_wells, reduce_wells
@@ -48,7 +49,11 @@ def test_reduced_wells_give_the_dense_posterior(basin):
     reduced = reduce_wells(column)
     m1, s1, _ = amplitudes_within_wells(reduced, np.zeros(3))
     engine = GlobalKriging(
-        xy, COVARIANCE, reduced.variance, loadings=reduced.loadings, prior_mean=m1,
+        xy,
+        COVARIANCE,
+        reduced.variance,
+        loadings=reduced.loadings,
+        prior_mean=m1,
         prior_covariance=s1,
     ).solve(reduced.heat_flow)
     amplitude, posterior = engine.amplitudes()

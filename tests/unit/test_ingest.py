@@ -8,6 +8,7 @@ from shared import shared_file
 
 from basinheat import ingest
 from basinheat.errors import UserError
+from basinheat.ingest import stage
 from basinheat.settings.model import Settings
 from basinheat.tables import Layers, Readings, Rejected, Wells
 
@@ -277,7 +278,7 @@ def test_braces_in_names_are_only_text(tmp_path):
 
 def test_a_lost_row_stops_the_run(tmp_path, monkeypatch):
     monkeypatch.setattr(
-        ingest, "screen_wells", lambda table, *rest: table.where(np.arange(len(table)) > 0)
+        stage, "screen_wells", lambda table, *rest: table.where(np.arange(len(table)) > 0)
     )
     with pytest.raises(RuntimeError, match="16 rows read, 15 kept"):
         prepare(tmp_path)

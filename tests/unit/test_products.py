@@ -3,7 +3,9 @@
 import numpy as np
 import pandas as pd
 import pytest
-from basinheat import products, tables
+
+from basinheat import mapnames, products, tables
+from basinheat.tables.maps import STATUS
 
 K, A, FLOW, SURFACE = 2.5, 1.2, 62.0, 9.0
 STEP, DEEPEST = 250.0, 5000.0
@@ -54,10 +56,22 @@ def maps():
         }
     )
     frame = products.derive(
-        cells, heat_flow, structure, sources, covariance, 500.0, [1000.0, 3000.0], [60.0, 200.0],
+        cells,
+        heat_flow,
+        structure,
+        sources,
+        covariance,
+        500.0,
+        [1000.0, 3000.0],
+        [60.0, 200.0],
         2000.0,
     )
     return tables.Maps.conform(frame)
+
+
+def test_the_maps_are_those_that_the_rule_promises(maps):
+    promised = mapnames.map_names([1000.0, 3000.0], [60.0, 200.0])
+    assert sorted(maps.columns.drop(["row", "col"])) == promised
 
 
 def closed_form(depth):
@@ -89,4 +103,4 @@ def test_isotherms_agree_with_the_column_and_are_blank_out_of_reach(maps):
 
 def test_status_says_the_worst_that_holds(maps):
     # 200 degC lies below the deepest depth of the model everywhere
-    assert maps["status"].nunique() == 1
+    assert (maps["status"] == STATUS["isotherm_too_deep"]).all()

@@ -4,6 +4,8 @@ from dataclasses import replace
 
 import numpy as np
 import pytest
+from scipy.integrate import solve_ivp
+
 from basinheat.rebuild import (
     HeatFlow,
     Sources,
@@ -12,7 +14,6 @@ from basinheat.rebuild import (
     isotherm_depths,
     rebuild_columns,
 )
-from scipy.integrate import solve_ivp
 
 EDGES = np.arange(0.0, 4001.0, 250.0)
 NONE = Sources(np.zeros(1), np.zeros((1, 1)), np.zeros(1), np.zeros(1), np.zeros(0, int))
@@ -111,5 +112,7 @@ def test_slices_never_cross():
     n = 200
     rock = structure(n, slope=-1e-3)
     rock = replace(rock, ln_conductivity=rng.normal(np.log(2.5), 0.6, rock.ln_conductivity.shape))
-    columns = rebuild_columns(np.full(n, 10.0), np.zeros(n), flow(rng.uniform(30, 120, n)), rock, NONE)
+    columns = rebuild_columns(
+        np.full(n, 10.0), np.zeros(n), flow(rng.uniform(30, 120, n)), rock, NONE
+    )
     assert (np.diff(columns.temperature, axis=1) > 0).all()

@@ -4,9 +4,10 @@ import numpy as np
 import pandas as pd
 import pytest
 
-from basinheat import resistances, tables
+from basinheat import tables
 from basinheat.conductivity import catalogue, conditions, porosity
 from basinheat.errors import UserError
+from basinheat.rock import resistances
 from basinheat.settings.heat import BelowLayers, Conductivity, HeatFlow
 
 NAMES = ("shale", "sandstone", "halite")

@@ -8,6 +8,7 @@ import pytest
 import yaml
 from pydantic import ValidationError
 
+from basinheat import documents
 from basinheat.errors import UserError
 from basinheat.settings import document
 from basinheat.settings.columns import INPUT_COLUMNS, ONE_OF
@@ -118,7 +119,8 @@ def test_a_glob_finds_its_files_in_order(folder):
 
 def test_paths_start_at_the_config(folder, monkeypatch, tmp_path_factory):
     monkeypatch.chdir(tmp_path_factory.mktemp("elsewhere"))
-    (folder / "model.json").write_text("{}", encoding="utf-8")
+    record = {"model": "exponential", "sill": 60.0, "range_m": 4e4, "nugget": 0.0}
+    documents.save({"covariance": record}, folder / "model.json")
     settings = load(folder, kriging={"variogram": {"pinned": "model.json"}})["base"]
     pinned = with_paths(settings, nearby(folder))["kriging"]["variogram"]["pinned"]
     assert os.path.samefile(pinned, folder / "model.json")

@@ -3,6 +3,7 @@
 import numpy as np
 import pandas as pd
 import pytest
+
 from basinheat import structure
 from basinheat.geostat.models import Covariance
 from basinheat.settings.heat import BelowLayers
@@ -90,3 +91,16 @@ def test_few_wells_with_layers_still_give_a_map(n_wells):
         frame, fitted, cells_of(points(n_wells=6)), STEP, 2000.0, 5, BelowLayers()
     )
     assert np.isfinite(grid[["ln_conductivity", "variance"]].to_numpy()).all()
+
+
+def test_rock_that_was_assumed_is_as_uncertain_between_wells_as_at_them():
+    # one rock for all wells: their values agree, and that tells nothing of the rock
+    frame = points().assign(value=np.log(2.5), value_std=0.15)
+    fitted = structure.fit_structure(frame, 5, ("matern15",))
+    grid = structure.krige_conductivity(
+        frame, fitted, cells_of(frame), STEP, 2000.0, 5, BelowLayers()
+    )
+    assert np.allclose(grid["ln_conductivity"], np.log(2.5))
+    # the mean of 60 wells adds a little to the variance of any one place
+    assert grid["variance"].between(0.15**2, 1.05 * 0.15**2).all()
+    assert fitted["vertical_correlation_m"] == structure.GROUP_M

@@ -1,6 +1,7 @@
 """Faults of the config: every one in a line of its own, before any job, without a traceback."""
 
 import copy
+import json
 import os
 import subprocess
 import sys
@@ -52,6 +53,14 @@ FAULTS = {
         ("correction",),
         {"order": ["horned"]},
         'correction.order[0]: "horned" is not a method; did you mean "horner"?',
+    ),
+    "not a region": (
+        ("correction",),
+        {"region": "oklohoma"},
+        'correction.region: "oklohoma" is not known; did you mean "oklahoma"?',
+    ),
+    "a variogram that is none": (
+        ("kriging",), {"variogram": {"pinned": "wells.csv"}}, "kriging.variogram.pinned: wells.csv",
     ),
     "a word for a list": (
         ("correction",), {"order": "horner"}, 'correction.order: must be a list (got "horner")',
@@ -193,6 +202,15 @@ def test_a_fault_is_one_line(folder, place, value, line):
     assert len(faults) == 1, "one slip, one line"
     assert line in faults[0]
     assert "\n" not in faults[0]
+
+
+def test_every_fault_of_a_pinned_variogram_is_a_line(folder):
+    record = {"covariance": {"model": "bessel", "sill": -1.0, "range_m": 4e4, "nugget": 0.0}}
+    (folder / "v.json").write_text(json.dumps(record), encoding="utf-8")
+    _, faults = faults_of(changed(("kriging",), {"variogram": {"pinned": "v.json"}}), folder)
+    assert len(faults) == 2
+    assert all(line.startswith("kriging.variogram.pinned: v.json: ") for line in faults)
+    assert '"bessel"' in faults[0] and "sill" in faults[1]
 
 
 def test_all_faults_are_told_at_once(folder):

@@ -10,14 +10,18 @@ rule write_rasters:
         maps="results/{run}/{scenario}/maps/maps.parquet",
         grid="results/{run}/{scenario}/maps/grid.json",
     output:
-        rasters=directory("results/{run}/{scenario}/delivery/rasters"),
+        rasters=expand(
+            "results/{run}/{scenario}/delivery/rasters/{file}",
+            file=RASTERS,
+            allow_missing=True,
+        ),
     log:
         "results/{run}/{scenario}/logs/write_rasters.log",
     conda:
         "../../envs/environment.yaml"
     threads: 1
     resources:
-        mem_mb=lambda wildcards, input: 2000 + 50 * int(input.size_mb),
+        mem_mb=lambda wildcards, input: 2000 + 3 * int(input.size_mb),
         runtime=20,
     params:
         settings=lambda wildcards: {
@@ -60,7 +64,7 @@ rule write_geopackage:
         "../../envs/environment.yaml"
     threads: 1
     resources:
-        mem_mb=lambda wildcards, input: 2000 + 50 * int(input.size_mb),
+        mem_mb=lambda wildcards, input: 2000 + 3 * int(input.size_mb),
         runtime=20,
     params:
         settings=lambda wildcards: {
@@ -132,7 +136,11 @@ rule write_report:
 
 rule write_manifest:
     input:
-        rasters="results/{run}/{scenario}/delivery/rasters",
+        rasters=expand(
+            "results/{run}/{scenario}/delivery/rasters/{file}",
+            file=RASTERS,
+            allow_missing=True,
+        ),
         geopackage="results/{run}/{scenario}/delivery/{run}.gpkg",
         report="results/{run}/{scenario}/delivery/report.html",
         grid="results/{run}/{scenario}/maps/grid.json",

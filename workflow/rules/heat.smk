@@ -2,8 +2,8 @@
 #
 # Reads     results/{run}/wells/, results/{run}/{scenario}/tables/wells.parquet
 # Writes    results/{run}/{scenario}/tables/, .../variograms/heat_flow.json
-# Settings  correction, conductivity, heat_flow, kriging.variogram, surface_temperature,
-#           validation.holdout
+# Settings  correction, conductivity, heat_flow, kriging.variogram, kriging.drift,
+#           surface_temperature, validation.holdout
 
 
 rule correct_temperatures:
@@ -106,6 +106,7 @@ rule fit_sources:
             ].surface_temperature.shared_std_k,
             "regional_mw_m2": SETTINGS[wildcards.scenario].heat_flow.regional_mw_m2,
             "holdout": tuple(BASE.validation.holdout),
+            "trend": SETTINGS[wildcards.scenario].kriging.drift,
         },
         code=code_digest("fit_sources.py"),
     message:

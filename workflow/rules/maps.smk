@@ -152,6 +152,7 @@ rule cross_validate:
         conductivity=lambda wildcards: SECTIONS[wildcards.scenario]["conductivity"],
         maps=SECTIONS["base"]["maps"],
         validation=SECTIONS["base"]["validation"],
+        drift=lambda wildcards: SETTINGS[wildcards.scenario].kriging.drift,
         code=code_digest("cross_validate.py"),
     message:
         "Judging the maps by what they have not seen ({wildcards.scenario})"

@@ -7,6 +7,8 @@ from numpy.typing import ArrayLike, NDArray
 
 Array = NDArray[np.float64]
 
+_SLOPE_UW_M3, _ZERO_API, _REACH_API = 0.0158, 0.8, 350.0  # above, the relation was not seen to hold
+
 
 def from_gamma_ray(gamma_ray_api: ArrayLike) -> Array:
     """Return heat production from a gamma-ray log: A = 0.0158 (GR - 0.8).
@@ -17,7 +19,8 @@ def from_gamma_ray(gamma_ray_api: ArrayLike) -> Array:
 
     Returns
     -------
-    ndarray, uW/m3, not below 0
+    ndarray, uW/m3
+        Not below 0; beyond 350 API that of 350.
 
     Notes
     -----
@@ -25,14 +28,16 @@ def from_gamma_ray(gamma_ray_api: ArrayLike) -> Array:
 
     References
     ----------
-    Bücker & Rybach (1996); constants read in the abstract of a later study.
+    Bücker & Rybach (1996), "A simple method to determine heat production from gamma-ray logs",
+    Marine and Petroleum Geology 13, 373-375; constants read in the abstract of a later study.
 
     Examples
     --------
     >>> round(float(from_gamma_ray(100.0)), 3)
     1.567
     """
-    return np.maximum(0.0158 * (np.asarray(gamma_ray_api, float) - 0.8), 0.0)
+    above = np.asarray(gamma_ray_api, float) - _ZERO_API
+    return _SLOPE_UW_M3 * np.clip(above, 0.0, _REACH_API)
 
 
 def from_elements(

@@ -1,6 +1,6 @@
 """Formation temperatures from readings in holes that mud has cooled."""
 
 from basinheat.corrections.registry import METHODS
-from basinheat.corrections.stage import Correction, correct
+from basinheat.corrections.stage import Corrected, correct
 
-__all__ = ["METHODS", "Correction", "correct"]
+__all__ = ["METHODS", "Corrected", "correct"]

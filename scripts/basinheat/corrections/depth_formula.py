@@ -4,22 +4,17 @@ from __future__ import annotations
 
 import numpy as np
 
-from basinheat.corrections.method import Context, Flags, Floats, Loading, Outcome, Uncertainty
+from basinheat.corrections.method import Context, Floats, Loading, Method, Outcome
 from basinheat.corrections.sets import ReadingSets
 
 # Outside the region a formula was made for (METHODS A12, common practice). Half the variance is
 # then the region's own, common to all its wells.
 OUTSIDE_TOTAL_K, OUTSIDE_SHARED_K = 12.0, 8.0
+OUTSIDE_REGION, OUTSIDE_DEPTHS = "outside_formula_region", "outside_formula_depths"
 
 
 def add_correction(
-    sets: ReadingSets,
-    context: Context,
-    name: str,
-    uncertainty: Uncertainty,
-    correction_k: Floats,
-    at_home: bool,
-    in_range: Flags,
+    sets: ReadingSets, context: Context, method: Method, correction_k: Floats
 ) -> Outcome:
     """Add a correction of depth to the warmest reading of every set.
 
@@ -29,17 +24,13 @@ def add_correction(
         Mud-cooled sets.
     context : Context
         Settings.
-    name : str
-        Method.
-    uncertainty : Uncertainty
-        Inside the region.
+    method : Method
+        The formula: its region and depths, its uncertainty there.
     correction_k : (sets,) array, K
         What to add.
-    at_home : bool
-        Whether the wells lie in the formula's region.
-    in_range : (sets,) array of bool
-        Whether depths are those it was made for.
     """
+    at_home, uncertainty = context.region in method.regions, method.uncertainty
+    low, high = method.depth_range_m
     total_k = uncertainty.total_k if at_home else OUTSIDE_TOTAL_K
     shared_k = uncertainty.shared_k if at_home else OUTSIDE_SHARED_K
     shared = np.full(len(sets), shared_k)
@@ -49,10 +40,10 @@ def add_correction(
         reason=np.zeros(len(sets), np.int64),
         independent_std_k=independent,
         well_std_k=well,
-        variance_class=np.full(len(sets), f"method:{name}"),
-        loadings={f"method:{name}": Loading(shared, shared_k, "K")},
+        variance_class=np.full(len(sets), f"method:{method.name}"),
+        loadings={f"method:{method.name}": Loading(shared, shared_k, "K")},
         flags={
-            "outside_formula_region": np.full(len(sets), not at_home),
-            "outside_formula_depths": ~in_range,
+            OUTSIDE_REGION: np.full(len(sets), not at_home),
+            OUTSIDE_DEPTHS: ~((sets.depth_m >= low) & (sets.depth_m <= high)),
         },
     )

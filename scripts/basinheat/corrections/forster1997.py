@@ -6,7 +6,7 @@ from dataclasses import replace
 
 import numpy as np
 
-from basinheat.corrections.depth_formula import add_correction
+from basinheat.corrections.depth_formula import OUTSIDE_DEPTHS, OUTSIDE_REGION, add_correction
 from basinheat.corrections.method import Context, Floats, Method, Outcome, Reference, Uncertainty
 from basinheat.corrections.sets import ReadingSets
 
@@ -45,14 +45,9 @@ def correction_k(depth_m: Floats) -> Floats:
 
 def estimate(sets: ReadingSets, context: Context) -> Outcome:
     """Add the correction to the warmest reading of every set, inside region and depths only."""
-    low, high = METHOD.depth_range_m
-    at_home = context.region in METHOD.regions
-    in_range = (sets.depth_m >= low) & (sets.depth_m <= high)
-    outcome = add_correction(
-        sets, context, METHOD.name, UNCERTAINTY, correction_k(sets.depth_m), at_home, in_range
-    )
-    reason = np.where(in_range, 0, 2) if at_home else np.ones(len(sets), np.int64)
-    return replace(outcome, reason=reason.astype(np.int64))
+    outcome = add_correction(sets, context, METHOD, correction_k(sets.depth_m))
+    away, beyond = (outcome.flags[name] for name in (OUTSIDE_REGION, OUTSIDE_DEPTHS))
+    return replace(outcome, reason=np.select([away, beyond], [1, 2], 0))
 
 
 METHOD = Method(

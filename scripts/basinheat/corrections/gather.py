@@ -17,12 +17,13 @@ from basinheat.corrections.sets import (
     ReadingSets,
     group_by_depth,
     largest,
+    mean_noted,
     pad,
     spread,
 )
 
 if TYPE_CHECKING:
-    from basinheat.settings.heat import Correction as Settings
+    from basinheat.settings.heat import Correction
 
 KINDS = ("equilibrium", "dst", "corrected", "bht")
 # Runs of logs that stopped a little apart belong together up to three gaps (45 m by default, below
@@ -70,7 +71,7 @@ class Gathered:
 
 
 def gather(
-    readings: pd.DataFrame, wells: pd.DataFrame, settings: Settings, holdout: Iterable[str] = ()
+    readings: pd.DataFrame, wells: pd.DataFrame, settings: Correction, holdout: Iterable[str] = ()
 ) -> Gathered:
     """Gather readings into sets.
 
@@ -142,7 +143,7 @@ def _arrays(
     group: Ints,
     number: NDArray[np.intp],
     learn: NDArray[np.bool_],
-    settings: Settings,
+    settings: Correction,
 ) -> ReadingSets:
     """Arrange the readings of sets as padded arrays."""
     place = pad(group, int(group[-1]) + 1)
@@ -174,6 +175,7 @@ def _arrays(
         hole_radius_m=np.where(radius > 0, radius, settings.hole_radius_m),
         surface_temperature_degc=surface,
         surface_std_k=wells["surface_temperature_std_k"].to_numpy(np.float64)[well],
+        mud_temperature_degc=mean_noted(padded("mud_temperature_degc")),
         std_stated=np.asarray(np.isfinite(std).any(1), dtype=bool),
         learn=learn[well],
     )

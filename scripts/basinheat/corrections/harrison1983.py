@@ -54,16 +54,7 @@ def correction_k(depth_m: Floats) -> Floats:
 
 def estimate(sets: ReadingSets, context: Context) -> Outcome:
     """Add the correction to the warmest reading of every set."""
-    low, high = METHOD.depth_range_m
-    return add_correction(
-        sets,
-        context,
-        METHOD.name,
-        UNCERTAINTY,
-        correction_k(sets.depth_m),
-        context.region in METHOD.regions,
-        (sets.depth_m >= low) & (sets.depth_m <= high),
-    )
+    return add_correction(sets, context, METHOD, correction_k(sets.depth_m))
 
 
 METHOD = Method(

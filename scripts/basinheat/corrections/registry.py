@@ -5,15 +5,22 @@ from __future__ import annotations
 from types import MappingProxyType
 
 from basinheat.corrections import (
+    brennand1984,
+    bullard1947,
     conductive_recovery,
     corrected,
+    cylinder_source,
     dst,
     equilibrium,
     forster1997,
+    generalised_horner,
     harrison1983,
     horner,
+    instantaneous_line_source,
     kehle_gregory,
     uncorrected,
+    waples2001,
+    waples2004,
 )
 
 METHODS = MappingProxyType(
@@ -24,10 +31,17 @@ METHODS = MappingProxyType(
             dst,
             corrected,
             horner,
+            generalised_horner,
+            cylinder_source,
+            instantaneous_line_source,
+            brennand1984,
+            bullard1947,
             conductive_recovery,
             harrison1983,
             kehle_gregory,
             forster1997,
+            waples2001,
+            waples2004,
             uncorrected,
         )
     }

@@ -34,6 +34,8 @@ class ReadingSets:
         Longest noted circulation (NaN for none) and widest hole.
     surface_temperature_degc, surface_std_k : (sets,) array, degC, K
         Surface temperature and the well's own part of its standard uncertainty.
+    mud_temperature_degc : (sets,) array, degC
+        Mean of the noted mud temperatures at the bottom of the hole, NaN for none.
     std_stated : (sets,) array of bool
         Whether a reading of the set states its standard uncertainty.
     learn : (sets,) array of bool
@@ -52,6 +54,7 @@ class ReadingSets:
     hole_radius_m: Floats
     surface_temperature_degc: Floats
     surface_std_k: Floats
+    mud_temperature_degc: Floats
     std_stated: NDArray[np.bool_]
     learn: NDArray[np.bool_]
 
@@ -90,6 +93,15 @@ class ReadingSets:
     def mean_degc(self) -> Floats:
         """Return the mean of the readings, (sets,) in degC."""
         return np.where(self.present, self.temperature_degc, 0.0).sum(1) / self.count
+
+    @property
+    def latest(self) -> Ints:
+        """Return the place of the latest timed reading, (sets,); 0 where none is timed."""
+        return np.maximum(self.timed - 1, 0)
+
+    def at(self, values: Floats, place: Ints) -> Floats:
+        """Return one reading's value of every set, (sets,)."""
+        return np.take_along_axis(values, place[:, None], 1)[:, 0]
 
     def at_one_depth(self, gradient_k_m: Floats) -> ReadingSets:
         """Carry every reading to the depth of its set with the region's gradient, (sets,) K/m."""
@@ -177,6 +189,14 @@ def spread(values: Floats, place: Ints) -> Floats:
     if values.size == 0:
         return np.full(place.shape, np.nan)
     return np.where(place >= 0, values[place], np.nan)
+
+
+def mean_noted(values: Floats) -> Floats:
+    """Return the mean of each row's values, NaN where there is none."""
+    noted = np.isfinite(values)
+    count = noted.sum(1)
+    total = np.where(noted, values, 0.0).sum(1)
+    return np.where(count > 0, total / np.maximum(count, 1), np.nan)
 
 
 def largest(values: Floats) -> Floats:

@@ -18,11 +18,11 @@ from basinheat.corrections.sets import ReadingSets
 from basinheat.corrections.trend import fit_trend
 
 if TYPE_CHECKING:
-    from basinheat.settings.heat import Correction as Settings
+    from basinheat.settings.heat import Correction
 
 
 @dataclass(frozen=True)
-class Correction:
+class Corrected:
     """What the correction leaves.
 
     Parameters
@@ -42,10 +42,10 @@ class Correction:
 def correct(
     readings: pd.DataFrame,
     wells: pd.DataFrame,
-    settings: Settings,
+    settings: Correction,
     holdout: Iterable[str] = (),
     surface_shared_std_k: float = 0.7,
-) -> Correction:
+) -> Corrected:
     """Estimate the formation temperature at every well and depth.
 
     Parameters
@@ -61,7 +61,7 @@ def correct(
 
     Returns
     -------
-    Correction
+    Corrected
         Every reading is in one estimate or one row of the ledger.
     """
     order = [METHODS[name] for name in settings.order]
@@ -85,7 +85,7 @@ def correct(
     }
     estimates = _estimates(gathered, chosen, order, context, settings.same_depth_m)
     rejected = pd.concat([gathered.rejected, _no_method(gathered, chosen)], ignore_index=True)
-    return Correction(
+    return Corrected(
         estimates=estimates,
         sources=_sources(estimates, chosen),
         rejected=tables.Rejected.conform(rejected),

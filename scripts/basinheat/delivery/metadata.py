@@ -6,6 +6,8 @@ import re
 from dataclasses import dataclass
 from typing import Any
 
+from basinheat.tables.maps import STATUS
+
 PROGRAM = "basinheat"
 VERSION = "0.1.0"
 DEPTH_REFERENCE = (
@@ -15,8 +17,6 @@ SIGMA = (
     "standard uncertainty (1 sigma), all parts: reading, correction, rock, interpolation, shared"
 )
 
-# Codes of the status maps: where several hold, the highest counts.
-STATUS = {"no_basis": 0, "interpolated": 1, "below_readings": 2, "isotherm_too_deep": 3}
 STATUS_NODATA = 255
 
 

@@ -18,7 +18,6 @@ from basinheat.delivery import cautions
 from basinheat.delivery.metadata import (
     DEPTH_REFERENCE,
     PROGRAM,
-    STATUS,
     STATUS_CLASSES,
     STATUS_NODATA,
     VERSION,
@@ -27,6 +26,7 @@ from basinheat.delivery.metadata import (
     quantity,
 )
 from basinheat.grid import Grid
+from basinheat.tables.maps import STATUS
 
 _LAYOUT = {"driver": "COG", "blocksize": 512, "compress": "DEFLATE", "bigtiff": "IF_SAFER"}
 _VALUES = {

@@ -54,7 +54,7 @@ def baselines(
     """
     data = as_values(values, len(as_places(xy)))
     predicted = predict_plainly(xy, data, neighbours, power)
-    return {name: _rmse(data - guess) for name, guess in predicted.items()}
+    return {name: _rmse(guess - data) for name, guess in predicted.items()}
 
 
 def predict_plainly(

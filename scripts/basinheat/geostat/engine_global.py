@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from dataclasses import replace
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -13,8 +14,11 @@ from basinheat.geostat.gls import NotPositiveDefiniteError, deviance, factorise,
 from basinheat.geostat.models import Covariance
 from basinheat.geostat.prediction import Prediction, Target, row_blocks
 from basinheat.geostat.threads import one_blas_thread
+from basinheat.geostat.tiles import NEAREST, local_variance
 
 Array = NDArray[np.float64]
+
+ALL_DATA = 600  # data up to which the variance rests on all of them: beyond, n^2 a place is slow
 
 
 class GlobalKriging:
@@ -72,9 +76,9 @@ class GlobalKriging:
         self._modes = Modes.of(len(self._xy), loadings, prior_mean, prior_covariance)
         self._drift, drift_matrix = Drift.of(self._xy, trend)
         self._drift_matrix = drift_matrix
-        errors = as_error_variance(error_variance, len(self._xy))
+        self._noise = covariance.nugget + as_error_variance(error_variance, len(self._xy))
         matrix = covariance.between(self._xy, self._xy)
-        matrix[np.diag_indices_from(matrix)] += covariance.nugget + errors
+        matrix[np.diag_indices_from(matrix)] += self._noise
         matrix += self._modes.covariance_of_data()
         try:
             self._factor = factorise(matrix, drift_matrix)
@@ -103,6 +107,7 @@ class GlobalKriging:
         drift0: ArrayLike | None = None,
         block: int | None = None,
         target: Target = "point",
+        nearest: int | None = None,
     ) -> Prediction:
         """Predict the field at places.
 
@@ -116,6 +121,9 @@ class GlobalKriging:
             Cells at a time; the default holds 32 MB, whatever the grid.
         target : {"point", "signal"}
             With the micro-scale nugget in the variance, or the smooth part only.
+        nearest : int, optional
+            Take the variance from the nearest data (``tiles``), so many at least; default all
+            data up to 600, then the nearest. Mean and sources always rest on all data.
 
         Returns
         -------
@@ -129,8 +137,26 @@ class GlobalKriging:
             (self._covariance.between(places[rows], self._xy), drift[rows])
             for rows in row_blocks(len(places), len(self._xy), block)
         )
-        own = self._covariance.sill + (self._covariance.nugget if target == "point" else 0.0)
-        return self._predict(parts, len(places), own)
+        micro = self._covariance.nugget if target == "point" else 0.0
+        if nearest is None:
+            nearest = 0 if len(self._xy) <= ALL_DATA else NEAREST
+        if not nearest:
+            return self._predict(parts, len(places), self._covariance.sill + micro)
+        prediction = self._predict(parts, len(places), None)
+        return replace(prediction, variance=micro + self._near(prediction, places, drift, nearest))
+
+    def _near(self, prediction: Prediction, places: Array, drift: Array, nearest: int) -> Array:
+        """Variance from the nearest data, and what the sources, known from all data, add to it."""
+        local = local_variance(
+            *(self._xy, self._covariance, self._noise, self._drift_matrix),
+            *(places, drift, nearest),
+        )
+        if not prediction.cross.shape[1]:
+            return local
+        _, posterior = self.amplitudes()
+        # a source that is known exactly has no variance to share out
+        carried = prediction.cross @ np.linalg.pinv(posterior, hermitian=True)
+        return local + np.einsum("ij,ij->i", prediction.cross, carried)
 
     @one_blas_thread
     def at_data(self, block: int | None = None) -> Prediction:
@@ -230,10 +256,13 @@ class GlobalKriging:
             raise ValueError("call solve(values) first")
         return self._values
 
-    def _predict(self, parts: Iterator[tuple[Array, Array]], cells: int, own: float) -> Prediction:
+    def _predict(
+        self, parts: Iterator[tuple[Array, Array]], cells: int, own: float | None
+    ) -> Prediction:
+        """Predict block by block; without ``own``, the prior variance, no variance is worked out."""
         self._need_values()
         m = self._modes.mean.size
-        mean, variance, cross = np.empty(cells), np.empty(cells), np.empty((cells, m))
+        mean, variance, cross = np.empty(cells), np.zeros(cells), np.empty((cells, m))
         duals = np.column_stack([self._dual, self._factor.unwhiten(self._shared)])
         start = 0
         for covariance, drift in parts:
@@ -242,6 +271,8 @@ class GlobalKriging:
             mean[rows] = drift @ self._beta + told[:, 0]
             # the loadings (times S) carried with the same weights as the values
             cross[rows] = -(drift @ self._shared_beta + told[:, 1:])
+            if own is None:
+                continue
             # C order of (cells, n) is Fortran order of its transpose: solved in place
             white = self._factor.whiten(covariance.T, overwrite=True)
             explained = np.einsum("ij,ij->j", white, white)

@@ -116,9 +116,9 @@ def deviance(factor: Factor, values: Array) -> float:
 
 
 def left_out(factor: Factor, dual: Array, labels: NDArray[Any]) -> tuple[Array, Array]:
-    """Return the residual of each datum from the data of other labels, and its variance.
+    """Return each datum less what the data of other labels say, and the variance of that.
 
-    With Q = K^-1 less its drift part and dual = Q y, the residuals of a block I are
+    With Q = K^-1 less its drift part and dual = Q y, these residuals of a block I are
     Q_II^-1 (Q y)_I, with covariance Q_II^-1 (Dubrule 1983, Mathematical Geology 15, 687-699).
 
     Parameters

@@ -38,6 +38,7 @@ def search(
     start: ArrayLike,
     steps: ArrayLike,
     evaluations: int = 300,
+    tolerance: float = 0.005,
 ) -> Search:
     """Minimise by Nelder-Mead from an explicit first simplex.
 
@@ -51,13 +52,16 @@ def search(
         First place, and how far each parameter is moved at first.
     evaluations : int
         At most.
+    tolerance : float
+        Of log-parameters (half a percent by default) and of -2 log likelihood, where the default
+        is far below what data can tell.
     """
     first = np.asarray(start, float)
     options = {
         "initial_simplex": np.vstack([first, first + np.diag(np.asarray(steps, float))]),
         "maxfev": evaluations,
-        "xatol": 0.005,  # of log-parameters: half a percent
-        "fatol": 0.005,  # of -2 log likelihood: far below what data can tell
+        "xatol": tolerance,
+        "fatol": tolerance,
     }
     end = minimize(function, first, method="Nelder-Mead", options=options)
     return Search(np.asarray(end.x, float), float(end.fun), int(end.nfev))

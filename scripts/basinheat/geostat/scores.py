@@ -18,7 +18,7 @@ def scores(residual: ArrayLike, std: ArrayLike) -> Scores:
     Parameters
     ----------
     residual : array, shape (n,), value units
-        Observed less predicted.
+        Predicted less observed.
     std : array, shape (n,), value units
         Standard uncertainty of the residual, the observation's own error included.
 
@@ -43,7 +43,8 @@ def scores(residual: ArrayLike, std: ArrayLike) -> Scores:
     if not len(left):
         return {"n": 0, **dict.fromkeys(_NAMES)}
     z = left / spread
-    distance = _distance_from_uniform(ndtr(z))
+    transform = ndtr(-z)  # where the observation lies in its forecast
+    distance = _distance_from_uniform(transform)
     numbers = {
         "bias": left.mean(),
         "rmse": np.sqrt((left**2).mean()),
@@ -51,7 +52,7 @@ def scores(residual: ArrayLike, std: ArrayLike) -> Scores:
         "msdr": (z**2).mean(),
         "median_sdr": np.median(z**2),
         **{f"coverage_{p}": (np.abs(z) <= ndtri(0.5 + p / 200)).mean() for p in _INTERVALS},
-        "pit_mean": ndtr(z).mean(),
+        "pit_mean": transform.mean(),
         "pit_ks": distance,
         "pit_ks_p": kolmogorov(np.sqrt(len(z)) * distance),
         "crps": (spread * _standard_crps(z)).mean(),

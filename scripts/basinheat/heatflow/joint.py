@@ -5,12 +5,13 @@ from __future__ import annotations
 from dataclasses import dataclass, replace
 
 import numpy as np
-from scipy.linalg import solve_triangular
-from scipy.optimize import minimize
 from scipy.spatial.distance import cdist
 
+from basinheat.geostat.drift import Drift
 from basinheat.geostat.engine_global import GlobalKriging
-from basinheat.geostat.models import Covariance, correlation
+from basinheat.geostat.gls import NotPositiveDefiniteError, deviance, factorise
+from basinheat.geostat.likelihood import search
+from basinheat.geostat.models import Covariance
 from basinheat.geostat.thinning import spread
 from basinheat.heatflow.reduction import (
     Column,
@@ -25,6 +26,7 @@ WELLS_FITTED = 500  # likelihood costs n^3; more wells hardly move range and sil
 WELLS_PER_SCALE = 12  # fewer wells say nothing of a variance scale
 SCALE_PRIOR_LN = 0.5
 TURNS = 3
+TOLERANCE = 0.02  # a finer search costs turns and moves nothing that is mapped
 
 
 @dataclass(frozen=True)
@@ -155,15 +157,15 @@ def fit_joint(
     n_temperature, n_rock = basin.loadings.shape[1], len(basin.ln_std) + basin.change.shape[1]
     place = slice(n_temperature, n_temperature + n_rock)
     sample = basin.of_wells(spread(basin.xy, WELLS_FITTED))
-    search = _Search(sample, models, pinned, regional, trend)
+    fitted = _Search(sample, models, pinned, regional, trend)
     rock = np.zeros(n_rock)
     for turn in range(TURNS):
         offset = np.concatenate(
             [np.zeros(n_temperature), rock, np.zeros(len(basin.production_std))]
         )
         if turn < TURNS - 1:
-            search.run(rock, regional, -offset)
-        covariance, scales = search.covariance(), search.scales()
+            fitted.run(rock, regional, -offset)
+        covariance, scales = fitted.covariance(), fitted.scales()
         reduced = reduce_wells(column_of(basin, rock, regional, scales))
         mean_within, covariance_within, _ = amplitudes_within_wells(reduced, -offset)
         engine = GlobalKriging(
@@ -203,10 +205,9 @@ class _Search:
         trend: str,
     ) -> None:
         self.basin, self.models, self.pinned = basin, models, pinned
-        centred = basin.xy - basin.xy.mean(0)
-        ones = np.ones((len(centred), 1))
-        self.drift = np.hstack([ones, centred / centred.std()]) if trend == "linear" else ones
-        self.distance = cdist(basin.xy, basin.xy)
+        _, self.drift = Drift.of(basin.xy, trend)
+        places = basin.xy if pinned is None else pinned.isotropic(basin.xy)
+        self.distance = cdist(places, places)
         diagonal = max(float(np.hypot(*np.ptp(basin.xy, axis=0))), 1.0)
         wells = [
             len(np.unique(basin.well[basin.scale_class == c]))
@@ -240,32 +241,24 @@ class _Search:
         """Search all models from where the last turn ended and keep the likeliest."""
         if self.pinned is not None and not len(self.free):
             return
-        results = []
+        ends = {}
         for model in self.models:
-            result = minimize(
-                self._deviance,
-                self.at,
-                args=(model, rock, regional, prior_mean),
-                method="Nelder-Mead",
-                # the default simplex hardly moves a parameter that starts at 0
-                options={
-                    "initial_simplex": np.vstack([self.at, self.at + np.diag(self.step)]),
-                    "maxfev": 50 * len(self.at),
-                    "xatol": 0.02,
-                    "fatol": 0.02,
-                },
-            )
-            results.append((result.fun, model, np.clip(result.x, self.low, self.high)))
-        _, self.model, self.at = min(results, key=lambda r: r[0])
+
+            def function(at: Floats, model: str = model) -> float:
+                return self._deviance(at, model, rock, regional, prior_mean)
+
+            ends[model] = search(function, self.at, self.step, 50 * len(self.at), TOLERANCE)
+        self.model = min(ends, key=lambda model: ends[model].value)
+        self.at = np.clip(ends[self.model].place, self.low, self.high)
         # later turns only polish
         self.models, self.step = (self.model,), 0.4 * self.step
 
-    def covariance(self) -> Covariance:
-        """Return the covariance at the best point."""
+    def covariance(self, at: Floats | None = None, model: str | None = None) -> Covariance:
+        """Return the covariance at a point, by default the best."""
         if self.pinned is not None:
             return self.pinned
-        sill, reach, nugget = np.exp(self.at[:3])
-        return Covariance(self.model, float(sill), float(reach), float(nugget))
+        sill, reach, nugget = np.exp((self.at if at is None else at)[:3])
+        return Covariance(model or self.model, float(sill), float(reach), float(nugget))
 
     def scales(self, at: Floats | None = None) -> Floats:
         """Return the variance scale of every class."""
@@ -279,23 +272,15 @@ class _Search:
         at = np.clip(at, self.low, self.high)
         reduced = reduce_wells(column_of(self.basin, rock, regional, self.scales(at)))
         mean, spread_, within = amplitudes_within_wells(reduced, prior_mean)
-        if self.pinned is None:
-            sill, reach, nugget = np.exp(at[:3])
-        else:
-            model, sill = self.pinned.model, self.pinned.sill
-            reach, nugget = self.pinned.range_m, self.pinned.nugget
-        matrix = sill * correlation(self.distance / reach, model)
+        covariance = self.covariance(at, model)
+        matrix = covariance.at_distance(self.distance)
         matrix += reduced.loadings @ spread_ @ reduced.loadings.T
-        matrix.flat[:: len(matrix) + 1] += reduced.variance + nugget
+        matrix.flat[:: len(matrix) + 1] += reduced.variance + covariance.nugget
         try:
-            lower = np.linalg.cholesky(matrix)
-        except np.linalg.LinAlgError:
+            factor = factorise(matrix, self.drift)
+        except NotPositiveDefiniteError:
             return np.inf
-        y = reduced.heat_flow - reduced.loadings @ mean
-        white = solve_triangular(lower, np.column_stack([self.drift, y]), lower=True)
-        basis, triangle = np.linalg.qr(white[:, :-1])
-        rest = white[:, -1] - basis @ (basis.T @ white[:, -1])
-        determinants = np.log(np.diag(lower)).sum() + np.log(np.abs(np.diag(triangle))).sum()
+        between = deviance(factor, reduced.heat_flow - reduced.loadings @ mean)
         # a scale of 1 and a range of a third of the basin are expected, weakly
         penalty = ((at[3:] / SCALE_PRIOR_LN) ** 2).sum() + ((at[1] - self.range_guess) / 1.5) ** 2
-        return float(within + 2 * determinants + rest @ rest + penalty)
+        return float(within + between + penalty)

@@ -108,9 +108,7 @@ def reduce_wells(column: Column) -> Reduced:
     )
 
 
-def amplitudes_within_wells(
-    reduced: Reduced, prior_mean: Floats
-) -> tuple[Floats, Floats, float]:
+def amplitudes_within_wells(reduced: Reduced, prior_mean: Floats) -> tuple[Floats, Floats, float]:
     """Combine the unit prior of the amplitudes with what the wells' own columns tell of them.
 
     Parameters

@@ -12,13 +12,13 @@ import pandas as pd
 from basinheat.errors import UserError
 from basinheat.geostat.models import Covariance
 from basinheat.geostat.variogram import experimental
-from basinheat.heatflow.joint import Basin, Joint, fit_joint
+from basinheat.heatflow.arrange import arrange, loadings_on, of_temperature, starts, with_surface
+from basinheat.heatflow.joint import Joint, fit_joint
 from basinheat.tables import Temperatures
+from basinheat.tables.sources import LITHOLOGY, PRODUCTION, ROCK
 
 log = logging.getLogger(__name__)
 
-SURFACE = "surface_temperature"
-LITHOLOGY, ROCK, PRODUCTION = "conductivity:", "rock:", "rock:heat_production"
 FEWEST_WELLS = 5
 
 
@@ -73,21 +73,26 @@ def fit(
     Raises
     ------
     UserError
-        When fewer than five wells have a temperature.
+        When fewer than five wells have a temperature, or all lie at one place.
     """
     kept = ~estimates["well"].isin(holdout)
     wells = wells[wells["well"].isin(estimates["well"][kept])].sort_values("well")
     wells = wells.reset_index(drop=True)
     if len(wells) < FEWEST_WELLS:
         raise UserError(
-            f"only {len(wells)} wells have a usable temperature, a map needs {FEWEST_WELLS}: see "
-            "rejected.csv for what was refused and why"
+            f"wells with a usable temperature: {len(wells)}, a map needs {FEWEST_WELLS}. "
+            "rejected.csv in the folder wells of the results says what was refused and why."
         )
-    sources = _with_surface(sources, surface_shared_std_k)
+    if len(wells[["easting_m", "northing_m"]].drop_duplicates()) == 1:
+        raise UserError(
+            f"all {len(wells)} wells lie at one place, a map needs several. Check the columns of x "
+            "and y in inputs.wells."
+        )
+    sources = with_surface(sources, surface_shared_std_k)
     order = np.argsort(estimates["well"].to_numpy()[kept], kind="stable")
     used = estimates[kept].iloc[order].reset_index(drop=True)
     rock = resistances[kept].iloc[order].reset_index(drop=True)
-    basin, classes = _basin(used, rock, sources, wells)
+    basin, classes = arrange(used, rock, sources, wells)
     if regional_mw_m2 is None:
         excess = basin.temperature - basin.surface + basin.radiogenic.sum(1)
         total = basin.resistance.sum(1) + basin.resistance_fixed
@@ -107,7 +112,7 @@ def fit(
         joint.covariance,
     )
     return Fit(
-        sources=_sources(joint, sources, used),
+        sources=_sources(joint, sources),
         source_covariance=_matrix(sources, joint.mean, joint.posterior),
         source_information=_matrix(sources, joint.mean_within, joint.covariance_within),
         temperatures=_temperatures(joint, estimates, sources, classes),
@@ -117,77 +122,12 @@ def fit(
     )
 
 
-def _with_surface(sources: pd.DataFrame, std_k: float) -> pd.DataFrame:
-    """Order the sources: of temperature with the surface, ln k, other rock, heat production."""
-    surface = pd.DataFrame({"source": [SURFACE], "prior_std": [std_k], "unit": ["K"]})
-    sources = pd.concat([sources[sources["source"] != SURFACE], surface])
-    name = sources["source"]
-    rank = np.select(
-        [name == PRODUCTION, name.str.startswith(ROCK), name.str.startswith(LITHOLOGY)],
-        [3, 2, 1],
-        0,
-    )
-    order = np.lexsort([name.to_numpy(str), rank])
-    return sources.iloc[order].reset_index(drop=True)
-
-
-def _starts(sources: pd.DataFrame, prefix: str) -> np.ndarray:
-    return sources["source"].str.startswith(prefix).to_numpy()
-
-
-def _of_temperature(sources: pd.DataFrame) -> np.ndarray:
-    return ~(_starts(sources, LITHOLOGY) | _starts(sources, ROCK))
-
-
-def _loadings(estimates: pd.DataFrame, names: pd.Series) -> np.ndarray:
-    """Return the loadings on the named sources, 0 where a row carries none."""
-    columns = [f"loading_{name}" for name in names]
-    return estimates.reindex(columns=columns).fillna(0.0).to_numpy()
-
-
-def _basin(
-    used: pd.DataFrame, rock: pd.DataFrame, sources: pd.DataFrame, wells: pd.DataFrame
-) -> tuple[Basin, list[str]]:
-    """Arrange the tables as the arrays of the fit."""
-    well = pd.Index(wells["well"]).get_indexer(used["well"])
-    at = wells.iloc[well]
-    lithology, of_temperature = _starts(sources, LITHOLOGY), _of_temperature(sources)
-    rocks = sources["source"][lithology].str.removeprefix(LITHOLOGY).tolist()
-    changes = [f"change_{s}" for s in sources["source"][_starts(sources, ROCK)] if s != PRODUCTION]
-    resistance = rock[[f"resistance_{name}" for name in rocks]].to_numpy() * 1e-3
-    radiogenic = rock[[f"radiogenic_{name}" for name in rocks]].to_numpy()
-    temperature_sources = sources[of_temperature]
-    classes, scale_class = np.unique(used["variance_class"].to_numpy(str), return_inverse=True)
-    return Basin(
-        well=well,
-        temperature=used["temperature_degc"].to_numpy(),
-        surface=at["surface_temperature_degc"].to_numpy(),
-        resistance=resistance,
-        radiogenic=radiogenic,
-        resistance_fixed=rock["resistance_m2k_w"].to_numpy() * 1e-3 - resistance.sum(1),
-        radiogenic_fixed=rock["radiogenic_k"].to_numpy() - radiogenic.sum(1),
-        loadings=_loadings(used, temperature_sources["source"]),
-        std=used["temperature_std_k"].to_numpy(),
-        well_std=used["well_std_k"].to_numpy(),
-        surface_std=at["surface_temperature_std_k"].to_numpy(),
-        resistance_std=rock["resistance_std_m2k_w"].to_numpy() * 1e-3,
-        scale_class=scale_class,
-        xy=wells[["easting_m", "northing_m"]].to_numpy(),
-        change=rock[changes].to_numpy() * 1e-3,
-        ln_std=sources["prior_std"].to_numpy()[lithology],
-        surface_shift=np.where(
-            temperature_sources["source"] == SURFACE, temperature_sources["prior_std"], 0.0
-        ),
-        production_std=sources["prior_std"][sources["source"] == PRODUCTION].to_numpy(),
-    ), classes.tolist()
-
-
 def _matrix(sources: pd.DataFrame, mean: np.ndarray, covariance: np.ndarray) -> pd.DataFrame:
     columns = {f"covariance_{name}": covariance[:, i] for i, name in enumerate(sources["source"])}
     return pd.DataFrame({"source": sources["source"], "mean": mean, **columns})
 
 
-def _sources(joint: Joint, sources: pd.DataFrame, used: pd.DataFrame) -> pd.DataFrame:
+def _sources(joint: Joint, sources: pd.DataFrame) -> pd.DataFrame:
     carried = pd.DataFrame(np.abs(joint.reduced.loadings) > 0, columns=sources["source"])
     return sources.assign(
         mean=joint.mean * sources["prior_std"],
@@ -200,10 +140,10 @@ def _temperatures(
     joint: Joint, estimates: pd.DataFrame, sources: pd.DataFrame, classes: list[str]
 ) -> pd.DataFrame:
     """Take the posterior mean of the sources out of the estimates, held-out wells included."""
-    of_temperature = _of_temperature(sources)
-    loadings = _loadings(estimates, sources["source"][of_temperature])
-    posterior = joint.posterior[np.ix_(of_temperature, of_temperature)]
-    shift = loadings @ joint.mean[of_temperature]
+    place = of_temperature(sources)
+    loadings = loadings_on(estimates, sources["source"][place])
+    posterior = joint.posterior[np.ix_(place, place)]
+    shift = loadings @ joint.mean[place]
     scale = dict(zip(classes, np.sqrt(joint.scales), strict=True))
     factor = estimates["variance_class"].map(scale).fillna(1.0).to_numpy(float)
     final = estimates.assign(
@@ -261,8 +201,8 @@ def _resistance(
     joint: Joint, rock: pd.DataFrame, sources: pd.DataFrame
 ) -> tuple[np.ndarray, np.ndarray]:
     """Resistance with the rock sources at their posterior mean, and sigma of its logarithm."""
-    lithology = _starts(sources, LITHOLOGY)
-    other = _starts(sources, ROCK) & (sources["source"] != PRODUCTION).to_numpy()
+    lithology = starts(sources, LITHOLOGY)
+    other = starts(sources, ROCK) & (sources["source"] != PRODUCTION).to_numpy()
     names = sources["source"].str.removeprefix(LITHOLOGY)
     ln_std = sources["prior_std"].to_numpy()[lithology]
     parts = rock[[f"resistance_{name}" for name in names[lithology]]].to_numpy()

@@ -113,7 +113,10 @@ def _header(lines: list[str], path: str | Path, spec: TableFile) -> tuple[list[s
     reader = csv.reader(islice(lines, spec.skip_lines, None), delimiter=spec.delimiter)
     header = [cell.strip() for cell in next(reader, [])]
     if not any(header):
-        raise UserError(f"{path}: line {spec.skip_lines + 1} holds no headers.")
+        raise UserError(
+            f"{path}: line {spec.skip_lines + 1} holds no headers. Is the file empty? Lines before "
+            "the headers are stated under `skip_lines`."
+        )
     return header, spec.skip_lines + reader.line_num
 
 
@@ -175,6 +178,9 @@ def _place(name: str, header: list[str], path: str | Path) -> int:
     from difflib import get_close_matches
 
     if name in header:
-        raise UserError(f'{path}: the header "{name}" stands there {header.count(name)} times.')
+        raise UserError(
+            f'{path}: the header "{name}" stands there {header.count(name)} times. Rename or remove '
+            "all but one."
+        )
     near = get_close_matches(name, header, 1) or header
     raise UserError(f'{path}: there is no column "{name}"; the nearest is "{near[0]}".')

@@ -42,8 +42,8 @@ _CLASSES = {
 }
 
 SCORES = {
-    "heat_flow_left_out": ("heat flow, well left out", "mW/m²", "well − prediction"),
-    "heat_flow_block_left_out": ("heat flow, block left out", "mW/m²", "well − prediction"),
+    "heat_flow_left_out": ("heat flow, well left out", "mW/m²", "prediction − well"),
+    "heat_flow_block_left_out": ("heat flow, block left out", "mW/m²", "prediction − well"),
     "temperature_closure": ("temperature, well in the maps", "K", "map − well"),
     "temperature_left_out": ("temperature, well left out", "K", "prediction − well"),
     "temperature_holdout": ("temperature, wells held out", "K", "prediction − well"),

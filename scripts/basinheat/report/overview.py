@@ -8,6 +8,7 @@ import numpy as np
 import pandas as pd
 
 from basinheat.delivery.metadata import quantity
+from basinheat.mapnames import temperature_name
 from basinheat.report import basis, captions
 from basinheat.report.contents import Contents
 from basinheat.report.sheet import Sheet, number, percent
@@ -20,7 +21,7 @@ _DIGITS = {"isotherm": 0}
 def key_figures(contents: Contents) -> list[tuple[str, str]]:
     """Return the figures a reader looks for first, as (label, value)."""
     depths = contents.depths_m
-    column = f"temperature_{depths[len(depths) // 2]:g}m"
+    column = temperature_name(depths[len(depths) // 2])
     values, std = contents.maps[column], contents.maps[f"{column}_std"]
     left_out = contents.scores["temperature_left_out"]
     title = quantity(column, contents.about).title
@@ -41,7 +42,7 @@ def trust_sheet(contents: Contents) -> Sheet:
     deepest = contents.temperatures.groupby("well")["depth_m"].max()
     rows = []
     for depth in contents.depths_m:
-        name = f"temperature_{depth:g}m"
+        name = temperature_name(depth)
         below = basis.below_readings(name, contents)
         std = maps[f"{name}_std"].to_numpy()
         rows.append(

@@ -9,8 +9,8 @@ from typing import Any, TypeVar
 
 from pydantic import BaseModel, ValidationError
 
+from basinheat.errors import UserError
 from basinheat.settings.check_tables import table_faults
-from basinheat.settings.faults import got
 from basinheat.settings.files import located
 from basinheat.settings.heat import Conductivity
 from basinheat.settings.inputs import Rasters, ReadingsFile, TableFile, WellsFile
@@ -39,7 +39,9 @@ def check(scenarios: Mapping[str, Mapping[str, Any]], folder: str | Path) -> lis
         Where relative paths start.
     """
     base = scenarios["base"]
-    faults = [*_map_crs(base.get("crs")), *_inputs(base.get("inputs"), folder)]
+    crs = base.get("crs")
+    faults = _crs("crs", crs, for_maps=True) if isinstance(crs, str) else []
+    faults += _inputs(base.get("inputs"), folder)
     maps = _valid(Maps, base.get("maps", {}))
     if maps is not None:
         faults += _absent("maps.mask.polygon", maps.mask.polygon, folder)
@@ -84,7 +86,7 @@ def _scenario(config: Mapping[str, Any], folder: str | Path) -> list[str]:
     faults = []
     kriging = _valid(Kriging, config.get("kriging", {}))
     if kriging is not None:
-        faults += _absent("kriging.variogram.pinned", kriging.variogram.pinned, folder)
+        faults += _pinned("kriging.variogram.pinned", kriging.variogram.pinned, folder)
     conductivity = _valid(Conductivity, config.get("conductivity", {}))
     if conductivity is not None:
         faults += _absent("conductivity.catalogue", conductivity.catalogue, folder)
@@ -108,6 +110,25 @@ def _surface_source(model: Any, inputs: Mapping[str, Any]) -> list[str]:
     ]
 
 
+def _pinned(path: str, name: str | None, folder: str | Path) -> list[str]:
+    """Return what keeps a file from being a reviewed covariance model."""
+    absent = _absent(path, name, folder)
+    if name is None or absent:
+        return absent
+    from basinheat import documents
+    from basinheat.geostat.models import Covariance
+
+    way_out = "take a heat_flow.json of results/.../variograms"
+    try:
+        record = documents.load(located(name, folder)[0])
+        Covariance.from_dict(record["covariance"])
+    except UserError as error:
+        return [f"{path}: {name}: {fault}; {way_out}" for fault in error.faults]
+    except (ValueError, KeyError, TypeError):
+        return [f"{path}: {name} holds no covariance model; {way_out}"]
+    return []
+
+
 def _absent(path: str, name: str | None, folder: str | Path) -> list[str]:
     """Return a line where a named file does not exist."""
     return [
@@ -117,33 +138,12 @@ def _absent(path: str, name: str | None, folder: str | Path) -> list[str]:
     ]
 
 
-def _map_crs(crs: Any) -> list[str]:
-    """Return what keeps a CRS from being that of the maps."""
-    if not isinstance(crs, str):
-        return []
-    unknown = _crs("crs", crs)
-    if unknown:
-        return unknown
-    from pyproj import CRS
+def _crs(path: str, crs: str, for_maps: bool = False) -> list[str]:
+    """Return a line where a coordinate reference system is not known, or cannot carry maps."""
+    from basinheat.projection import crs_fault
 
-    known = CRS.from_user_input(crs)
-    way_out = "maps need a projected one in metres, such as the UTM zone of the wells (EPSG:32631)"
-    if not known.is_projected:
-        return [f"crs: {crs} is {known.name}, which is not projected; {way_out}"]
-    units = {axis.unit_name for axis in known.axis_info[:2]}
-    return [] if units == {"metre"} else [f"crs: {crs} counts in {units.pop()}; {way_out}"]
-
-
-def _crs(path: str, crs: str) -> list[str]:
-    """Return a line where a coordinate reference system is not known."""
-    from pyproj import CRS
-    from pyproj.exceptions import CRSError
-
-    try:
-        CRS.from_user_input(crs)
-    except CRSError:
-        return [f"{path}: {got(crs)} is no coordinate reference system; write it like EPSG:32631"]
-    return []
+    fault = crs_fault(crs, for_maps)
+    return [f"{path}: {fault}"] if fault else []
 
 
 def _valid(model: type[S], raw: Any) -> S | None:

@@ -126,5 +126,16 @@ def _headers(path: str, kind: str, table: TableFile, folder: str | Path) -> list
             if header not in present
         ]
         if not table.columns:
-            faults += _required(f"{path}.columns", kind, dict.fromkeys(present, ""))
+            faults += [
+                f"{fault}: {file} has {_told(present)}"
+                for fault in _required(f"{path}.columns", kind, dict.fromkeys(present, ""))
+            ]
     return faults
+
+
+def _told(present: list[str]) -> str:
+    """Return the first headers of a file, and the delimiter they may have in truth."""
+    shown = ["".join(c if c.isprintable() else "?" for c in header[:40]) for header in present[:4]]
+    text = "the headers " + ", ".join(got(header) for header in shown)
+    mark = next((m for m in ";\t|," if len(present) == 1 and m in present[0]), None)
+    return text + (f"; state delimiter: {mark!r}" if mark else "; map them under `columns`")

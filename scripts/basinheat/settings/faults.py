@@ -54,7 +54,7 @@ def describe(
         if fault["type"].startswith("union_tag"):
             place.append("model")
         # Alternatives of a type each report; the first speaks for all.
-        lines.setdefault(_dotted(place), _sentence(fault, model, config))
+        lines.setdefault(_dotted(place), _sentence(fault, model))
     return [f"{path}: {sentence}" for path, sentence in lines.items()]
 
 
@@ -73,7 +73,7 @@ def got(value: Any) -> str:
     return shown if len(shown) <= 60 else f"{shown[:57]}..."
 
 
-def _sentence(fault: Mapping[str, Any], model: type[BaseModel], config: Mapping[str, Any]) -> str:
+def _sentence(fault: Mapping[str, Any], model: type[BaseModel]) -> str:
     """Return what is wrong with one place of the config."""
     kind, value, context = fault["type"], fault["input"], fault.get("ctx", {})
     if kind == "extra_forbidden":

@@ -13,12 +13,20 @@ Method = Literal[
     "dst",
     "corrected",
     "horner",
+    "generalised_horner",
+    "cylinder_source",
+    "instantaneous_line_source",
+    "brennand1984",
+    "bullard1947",
     "conductive_recovery",
     "harrison1983",
     "kehle_gregory",
     "forster1997",
+    "waples2001",
+    "waples2004",
     "uncorrected",
 ]
+Region = Literal["oklahoma", "kansas_southeast", "united_states", "malay_basin", "campeche"]
 
 
 class Correction(Section):
@@ -29,10 +37,8 @@ class Correction(Section):
         min_length=1,
         description="methods; the first that applies counts, per well and depth",
     )
-    region: str | None = Field(
-        default=None,
-        description="region of the wells, to admit a regional formula: oklahoma, kansas_southeast, "
-        "united_states",
+    region: Region | None = Field(
+        default=None, description="region of the wells, to admit a regional formula"
     )
     same_depth_m: PositiveFloat = Field(
         default=15.0, description="readings of one well closer than this are one set"

@@ -51,4 +51,6 @@ class StructureGrid(Table):
         "reference_temperature_degc": number("degC", "temperature the conductivity is given at"),
         "temperature_slope_per_k": number("1/K", "d ln k / dT at that temperature"),
     }
-    open_columns = {"loading_": number("", "change of ln k per unit standard deviation of a source")}
+    open_columns = {
+        "loading_": number("", "change of ln k per unit standard deviation of a source")
+    }

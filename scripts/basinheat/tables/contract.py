@@ -156,7 +156,11 @@ def _cast(values: pd.Series | None, column: Column, rows: int) -> pd.Series | np
             column.kind, np.zeros(rows, bool)
         )
     kind = {"number": np.float64, "count": np.int64, "flag": bool}[column.kind]
-    return values.to_numpy(dtype=kind, na_value=np.nan) if kind is np.float64 else values.to_numpy(kind)
+    return (
+        values.to_numpy(dtype=kind, na_value=np.nan)
+        if kind is np.float64
+        else values.to_numpy(kind)
+    )
 
 
 def _rounded(values: pd.Series) -> pd.Series:

@@ -14,5 +14,7 @@ class Layers(Table):
         "conductivity_w_mk": number("W/(m K)", "measured, at 25 degC, NaN where not measured"),
         "conductivity_std_w_mk": number("W/(m K)", "its standard uncertainty"),
         "porosity": number("", "measured porosity, 0 to 1, NaN where not measured"),
-        "heat_production_uw_m3": number("uW/m3", "measured heat production, NaN where not measured"),
+        "heat_production_uw_m3": number(
+            "uW/m3", "measured heat production, NaN where not measured"
+        ),
     }

@@ -3,12 +3,14 @@
 from basinheat.tables.contract import Table, number
 from basinheat.tables.contract import count as whole
 
+# Codes of the status maps: where several hold, the highest counts.
+STATUS = {"no_basis": 0, "interpolated": 1, "below_readings": 2, "isotherm_too_deep": 3}
+
 
 class Maps(Table):
     """One row per cell: every quantity that is delivered, and its standard uncertainty.
 
-    Open columns are named as the rasters: ``temperature_2000m``, ``temperature_2000m_std``,
-    ``isotherm_100c``, ``isotherm_100c_std``, ``isotherm_100c_status``.
+    Named as the rasters, see ``basinheat.mapnames``.
     """
 
     columns = {
@@ -20,7 +22,7 @@ class Maps(Table):
         "heat_flow_std": number("mW/m2", "its standard uncertainty"),
         "gradient": number("K/km", "mean gradient from the surface to the reference depth"),
         "gradient_std": number("K/km", "its standard uncertainty"),
-        "status": whole("what the cell rests on: see delivery/metadata.py"),
+        "status": whole("what the cell rests on: see ``STATUS``"),
     }
     open_columns = {
         "temperature_": number("degC or K", "temperature at a depth, and its standard uncertainty"),

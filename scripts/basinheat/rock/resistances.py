@@ -10,12 +10,14 @@ import numpy as np
 import pandas as pd
 from numpy.typing import NDArray
 
-from basinheat import layerinput, regionalflow, rockpasses, section
 from basinheat.conductivity import catalogue
-from basinheat.rockmodel import ORIGINS, Below, RockModel
-from basinheat.rockpasses import Passes, Readings
+from basinheat.rock import regionalflow, section
+from basinheat.rock.beds import prepare_beds
+from basinheat.rock.model import ORIGINS, Below, RockModel
+from basinheat.rock.passes import Passes, Readings, first_pass, regional_flow, second_pass
 from basinheat.settings.heat import Conductivity, HeatFlow
 from basinheat.tables import Resistances, Sources, StructurePoints
+from basinheat.tables.sources import LITHOLOGY, PRODUCTION, ROCK
 
 log = logging.getLogger(__name__)
 Array = NDArray[np.float64]
@@ -23,7 +25,7 @@ Array = NDArray[np.float64]
 # What is uncertain about all rock at once, beside the level of each lithology. Published laws of
 # k(T) differ by 5 to 15 % at 100 degC, about a third of the fall; surface porosities and heat
 # productions of one rock differ by 10 and 20 % between basins (common practice, no source).
-LAW, COMPACTION, PRODUCTION = "rock:temperature_law", "rock:compaction", "rock:heat_production"
+LAW, COMPACTION = f"{ROCK}temperature_law", f"{ROCK}compaction"
 PRIOR_STD = {LAW: 0.3, COMPACTION: 0.1, PRODUCTION: 0.2}
 
 
@@ -75,22 +77,22 @@ def estimate(
     model, rejected = _model(readings, wells, layers, conductivity)
     passes = Passes(model, wells["surface_temperature_degc"].to_numpy(float), readings)
     if heat_flow.regional_mw_m2 is None:
-        regional = rockpasses.regional_flow(passes)
+        regional = regional_flow(passes)
     else:
         regional = heat_flow.regional_mw_m2 / 1000.0
     count = len(wells)
-    flow, slowness, mean_slowness = rockpasses.first_pass(passes, np.full(count, regional))
+    flow, slowness, mean_slowness = first_pass(passes, np.full(count, regional))
     covariance = section.spread(slowness, mean_slowness, model.interval_m)
     xy = wells[["easting_m", "northing_m"]].to_numpy(float)
     local = regionalflow.smoothed(xy, flow, regional)
     log.info("heat flow for the temperature of the rock: %.1f mW/m2", 1000.0 * regional)
-    for name, rows in rejected.groupby("code"):
-        log.warning("%d layers not used: %s", len(rows), name)
-    rows, points = rockpasses.second_pass(passes, local, covariance, conductivity.well_std_ln)
+    for code, refused in rejected.groupby("code"):
+        log.warning("%d layers not used: %s", len(refused), code)
+    rows, points = second_pass(passes, local, covariance, conductivity.well_std_ln)
     changes = {}
     for source, varied in _variants(model).items():
         altered = Passes(varied, passes.surface_degc, readings)
-        other = rockpasses.second_pass(altered, local, covariance, conductivity.well_std_ln)
+        other = second_pass(altered, local, covariance, conductivity.well_std_ln)
         changes[source] = (
             other[0]["resistance"].sum(1) - rows["resistance"].sum(1),
             other[1]["value"] - points["value"],
@@ -127,7 +129,7 @@ def _model(
 ) -> tuple[RockModel, pd.DataFrame]:
     """Put the rock model together."""
     rocks = catalogue.load(settings.catalogue)
-    beds, lithologies, default, rejected = layerinput.prepare(layers, wells, rocks, settings)
+    beds, lithologies, default, rejected = prepare_beds(layers, wells, rocks, settings)
     deepest = np.full(len(wells), settings.interval_m)
     np.maximum.at(deepest, readings.well, readings.depth_m)
     np.maximum.at(deepest, beds.well, beds.base_m)
@@ -206,11 +208,11 @@ def _tables(
             "top_m": place * model.interval_m,
             "base_m": (place + 1) * model.interval_m,
             **points,
-            **{f"loading_conductivity:{rocks.names[j]}": loading[:, j] for j in in_use},
+            **{f"loading_{LITHOLOGY}{rocks.names[j]}": loading[:, j] for j in in_use},
             **{f"loading_{source}": change for source, (_, change) in changes.items()},
         }
     )
-    prior = {f"conductivity:{rocks.names[j]}": (rocks.std_ln[j], "ln") for j in in_use}
+    prior = {f"{LITHOLOGY}{rocks.names[j]}": (rocks.std_ln[j], "ln") for j in in_use}
     prior |= {source: (PRIOR_STD[source], "relative") for source in [*changes, PRODUCTION]}
     sources = pd.DataFrame(
         {

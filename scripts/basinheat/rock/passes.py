@@ -8,9 +8,16 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from basinheat import regionalflow, rockcolumns, rockintervals
-from basinheat.rockintervals import Intervals
-from basinheat.rockmodel import RockModel
+from basinheat.rock import regionalflow
+from basinheat.rock.columns import Columns, Integrals, at_depths, integrate
+from basinheat.rock.intervals import (
+    Intervals,
+    bed_variance_at,
+    gap_above,
+    origin_at,
+    sum_intervals,
+)
+from basinheat.rock.model import RockModel
 
 Array = NDArray[np.float64]
 Whole = NDArray[np.int64]
@@ -64,7 +71,7 @@ class Passes:
         for i in range(0, len(wells), BLOCK):
             block = wells[i : i + BLOCK]
             columns = self.model.columns(block)
-            integrals = rockcolumns.integrate(columns, self.surface_degc[block], flow[block])
+            integrals = integrate(columns, self.surface_degc[block], flow[block])
             rows = self.readings.of(block)
             place = np.searchsorted(block, self.readings.well[rows])
             yield Block(block, columns, integrals, rows, place, self.readings.depth_m[rows])
@@ -75,15 +82,15 @@ class Block:
     """Some wells, their columns, and the rows of readings in them."""
 
     wells: Whole
-    columns: rockcolumns.Columns
-    integrals: rockcolumns.Integrals
+    columns: Columns
+    integrals: Integrals
     rows: Whole
     place: Whole
     depth_m: Array
 
     def at_readings(self) -> tuple[Array, Array]:
         """Return resistance and radiogenic term by group at the readings."""
-        return rockcolumns.at_depths(self.columns, self.integrals, self.place, self.depth_m)
+        return at_depths(self.columns, self.integrals, self.place, self.depth_m)
 
 
 def regional_flow(passes: Passes) -> float:
@@ -111,7 +118,7 @@ def first_pass(passes: Passes, flow: Array) -> tuple[Array, Array, Array]:
     resistance, thickness = np.zeros(intervals), np.zeros(intervals)
     for block in passes.run(np.arange(len(flow)), flow):
         single[block.rows] = _single(block, readings)
-        sums = rockintervals.sum_intervals(model, block.columns, block.integrals)
+        sums = sum_intervals(model, block.columns, block.integrals)
         shown = sums.own_m >= OWN_SHARE * sums.thickness_m
         own[block.wells[sums.well[shown]], sums.place[shown]] = (
             sums.own_resistance[shown].sum(1) / sums.own_m[shown]
@@ -138,10 +145,10 @@ def second_pass(
         resistance, radiogenic = block.at_readings()
         rows["resistance"][block.rows], rows["radiogenic"][block.rows] = resistance, radiogenic
         rows["variance"][block.rows] = _variance(model, block, resistance, covariance, well_std_ln)
-        rows["origin"][block.rows] = rockintervals.origin_at(
+        rows["origin"][block.rows] = origin_at(
             model, block.columns, block.integrals, block.place, block.depth_m
         )
-        sums = rockintervals.sum_intervals(model, block.columns, block.integrals)
+        sums = sum_intervals(model, block.columns, block.integrals)
         points.append(_structure(model, block.wells, sums, covariance, well_std_ln))
     names = points[0] if points else {}
     return rows, {name: np.concatenate([p[name] for p in points]) for name in names}
@@ -160,14 +167,12 @@ def _variance(
     model: RockModel, block: Block, resistance: Array, covariance: Array, well_std_ln: float
 ) -> Array:
     """Return the independent variance of resistance, by row of the block."""
-    gap = rockintervals.gap_above(model, block.columns, len(covariance), block.place, block.depth_m)
+    gap = gap_above(model, block.columns, len(covariance), block.place, block.depth_m)
     deeper = np.maximum(block.depth_m - model.section.known_m, 0.0)
     below = model.below.std_ln + model.below.growth_ln_per_m * deeper
     return (
         (well_std_ln * resistance[:, : model.rocks]) ** 2 @ np.ones(model.rocks)
-        + rockintervals.bed_variance_at(
-            model, block.columns, block.integrals, block.place, block.depth_m
-        )
+        + bed_variance_at(model, block.columns, block.integrals, block.place, block.depth_m)
         + np.einsum("ri,ij,rj->r", gap, covariance, gap)
         + (below * resistance[:, model.rocks + 1]) ** 2
     )
@@ -194,7 +199,8 @@ def _structure(
     return {
         "well": wells[sums.well[keep]],
         "place": place,
-        "value": np.log(sums.thickness_m[keep] / total),
+        # what is assumed is the mean of 1/k: the median of the k that may be there lies higher
+        "value": np.log(sums.thickness_m[keep] / total) + 0.5 * variance * assumed,
         "value_std": np.maximum(np.sqrt(variance), SMALLEST_STD_LN),
         "heat_production_uw_m3": sums.heat_production_w_m3[keep] * 1e6,
         "reference_temperature_degc": sums.temperature_degc[keep],

@@ -14,11 +14,11 @@ from pathlib import Path
 import numpy as np
 import pandas as pd
 
-from basinheat.decisions import Decisions
 from basinheat.flags import joined, mark
-from basinheat.ingest_layers import prepare_layers
-from basinheat.ingest_readings import attribute, clean_readings, place_readings
-from basinheat.ingest_wells import prepare_wells
+from basinheat.ingest.decisions import Decisions
+from basinheat.ingest.layers import prepare_layers
+from basinheat.ingest.readings import attribute, clean_readings, place_readings
+from basinheat.ingest.wells import prepare_wells
 from basinheat.ledger import Ledger
 from basinheat.readers import InputTable, read_inputs
 from basinheat.screening import screen_against_neighbours, screen_records, screen_wells

@@ -7,9 +7,8 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from basinheat import rockcolumns
-from basinheat.rockcolumns import Columns, Integrals
-from basinheat.rockmodel import ORIGINS, RockModel
+from basinheat.rock.columns import Columns, Integrals, warmed
+from basinheat.rock.model import ORIGINS, RockModel
 
 Array = NDArray[np.float64]
 Whole = NDArray[np.int64]
@@ -47,7 +46,7 @@ def sum_intervals(model: RockModel, columns: Columns, integrals: Integrals) -> I
     ----------
     model : RockModel
     columns, integrals
-        Of some wells, by :meth:`RockModel.columns` and ``rockcolumns.integrate``.
+        Of some wells, by :meth:`RockModel.columns` and :func:`basinheat.rock.columns.integrate`.
     """
     slabs, h = columns.slabs, columns.slabs.thickness_m
     place = np.floor(slabs.middle_m / model.interval_m).astype(np.int64)
@@ -60,8 +59,8 @@ def sum_intervals(model: RockModel, columns: Columns, integrals: Integrals) -> I
 
     own = slabs.layer >= 0
     thickness, resistance = total(h), total(integrals.resistance)
-    warm = total(rockcolumns.warmed(columns, integrals, WARMER_K).sum(1))
-    cool = total(rockcolumns.warmed(columns, integrals, -WARMER_K).sum(1))
+    warm = total(warmed(columns, integrals, WARMER_K).sum(1))
+    cool = total(warmed(columns, integrals, -WARMER_K).sum(1))
     slope = np.log(cool / warm) / (2.0 * WARMER_K)
     return Intervals(
         well=slabs.well[start],

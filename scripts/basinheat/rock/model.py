@@ -10,9 +10,9 @@ from numpy.typing import NDArray
 
 from basinheat.conductivity import porosity
 from basinheat.conductivity.conditions import LAW_NAMES
-from basinheat.rockcolumns import Columns, Parts
-from basinheat.section import Section
-from basinheat.slabs import Slabs, cut
+from basinheat.rock.columns import Columns, Parts
+from basinheat.rock.section import Section
+from basinheat.rock.slabs import Slabs, cut
 
 Array = NDArray[np.float64]
 Whole = NDArray[np.int64]

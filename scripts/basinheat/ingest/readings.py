@@ -9,9 +9,10 @@ from typing import get_args
 import numpy as np
 import pandas as pd
 
-from basinheat import depths, duplicates, trajectory
-from basinheat.decisions import Decisions
+from basinheat import duplicates, trajectory
 from basinheat.flags import mark
+from basinheat.ingest import depths
+from basinheat.ingest.decisions import Decisions
 from basinheat.ledger import Ledger
 from basinheat.readers import InputTable
 from basinheat.readers.cells import dates
@@ -26,6 +27,7 @@ OPTIONAL = (
     "mud_temperature",
 )
 KINDS = get_args(Kind)
+DEEPEST_M = 15_000.0  # along the hole: 12,262 m at Kola, 15 km in extended reach (from memory)
 _PLACE = (
     "easting_m",
     "northing_m",
@@ -166,6 +168,15 @@ def _complete(table: InputTable, ledger: Ledger) -> InputTable:
         "depth_negative",
         "depth is {depth:g} m, must be positive down. Check its sign or the unit of column "
         '"{header}".',
+    )
+    deep = table.frame["vertical_depth"].fillna(table.frame["depth"]).to_numpy()
+    table = ledger.refuse(
+        table,
+        np.fmax(deep, table.frame["depth"].to_numpy()) > DEEPEST_M,
+        "depth",
+        "depth_impossible",
+        f"depth is {{depth:g}} m, deeper than any hole ({DEEPEST_M:g} m). Check the value and the "
+        'unit of column "{header}".',
     )
     unknown = ~table.frame["kind"].isin(KINDS).to_numpy()
     return ledger.refuse(

@@ -5,7 +5,9 @@ from __future__ import annotations
 import numpy as np
 import pandas as pd
 
-from basinheat import depths, trajectory
+from basinheat import trajectory
+from basinheat.conductivity.heat_production import from_gamma_ray
+from basinheat.ingest import depths
 from basinheat.ledger import Ledger
 from basinheat.readers import InputTable
 from basinheat.tables import Layers
@@ -20,10 +22,6 @@ OPTIONAL = {
     "heat_production": (0.0, 50.0),
     "gamma_ray": (0.0, 2000.0),
 }
-# Heat production from gamma ray, A = 0.0158 (GR - 0.8), 0-350 API: Bücker and Rybach (1996), "A
-# simple method to determine heat production from gamma-ray logs", Mar. Petrol. Geol. 13, 373-375
-# (constants read in the abstract of another paper).
-GAMMA_SLOPE_UW_M3, GAMMA_ZERO_API, GAMMA_HIGHEST_API = 0.0158, 0.8, 350.0
 
 
 def prepare_layers(
@@ -66,8 +64,8 @@ def prepare_layers(
     table.frame["top_m"] = np.maximum(table.frame["top_m"], 0.0)
     table = _one_level(table, ledger)
     frame = table.frame
-    gamma = np.clip(frame["gamma_ray"] - GAMMA_ZERO_API, 0.0, GAMMA_HIGHEST_API)
-    heat = frame["heat_production"].fillna(GAMMA_SLOPE_UW_M3 * gamma)
+    told = frame["heat_production"]
+    heat = told.where(told.notna(), from_gamma_ray(frame["gamma_ray"]))
     return Layers.conform(
         pd.DataFrame(
             {

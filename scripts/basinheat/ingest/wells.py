@@ -11,9 +11,9 @@ import numpy as np
 import pandas as pd
 
 from basinheat import datums, projection, rasters, surface
-from basinheat.decisions import Decisions
 from basinheat.duplicates import one_row_a_well
 from basinheat.flags import mark
+from basinheat.ingest.decisions import Decisions
 from basinheat.ledger import Ledger
 from basinheat.readers import InputTable
 from basinheat.screening import screen_locations

@@ -8,9 +8,9 @@ from numpy.typing import NDArray
 
 from basinheat.conductivity.catalogue import Catalogue
 from basinheat.errors import UserError
-from basinheat.rockmodel import Beds, Lithologies
+from basinheat.rock.model import Beds, Lithologies
+from basinheat.rock.slabs import overlapping
 from basinheat.settings.heat import Conductivity
-from basinheat.slabs import overlapping
 from basinheat.tables import Rejected
 
 MEASURED_STD_LN = 0.10  # of a measured conductivity without stated uncertainty; common practice
@@ -18,7 +18,7 @@ MOST_UNKNOWN = 0.2  # share of layers of unknown rock from which names are at fa
 DEEPEST_M = 15_000.0  # deeper than any hole
 
 
-def prepare(
+def prepare_beds(
     layers: pd.DataFrame, wells: pd.DataFrame, catalogue: Catalogue, settings: Conductivity
 ) -> tuple[Beds, Lithologies, int, pd.DataFrame]:
     """Sort and check the layers and find their lithologies in the catalogue.

@@ -14,7 +14,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from basinheat.conductivity import conditions
-from basinheat.slabs import Slabs
+from basinheat.rock.slabs import Slabs
 
 Array = NDArray[np.float64]
 Whole = NDArray[np.int64]
