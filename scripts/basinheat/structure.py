@@ -172,7 +172,7 @@ def _closest(experimental: Experimental, models: tuple[str, ...]) -> Covariance:
 
 
 def _all_nugget(intervals: list[_Interval]) -> Covariance:
-    """The wells' own error variance as that of every place."""
+    """Return the wells' own error variance as that of every place."""
     variance = float(np.mean(np.concatenate([i.error for i in intervals])))
     return replace(UNTOLD, sill=0.0, nugget=variance)
 

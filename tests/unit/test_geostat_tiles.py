@@ -2,6 +2,7 @@
 
 import numpy as np
 import pytest
+
 from basinheat.geostat.engine_global import GlobalKriging
 from basinheat.geostat.models import Covariance
 

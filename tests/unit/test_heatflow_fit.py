@@ -118,7 +118,7 @@ def test_own_sigma_of_heat_flow_is_honest():
 
 def test_a_basin_of_no_wells_is_refused_in_a_line():
     rows = tables.Estimates.empty()
-    with pytest.raises(UserError, match="only 0 wells"):
+    with pytest.raises(UserError, match="usable temperature: 0"):
         heatflow.fit(
             rows,
             tables.Resistances.empty(),

@@ -218,7 +218,7 @@ LEDGERS = {
         {("readings", "unknown_kind"): 1},
     ),
     "negative water depth": (
-        {"wells": GOOD_WELLS.replace("N03,530000,6000000,100,105,,", "N03,530000,6000000,,25,-90,")},
+        {"wells": GOOD_WELLS.replace("6000000,100,105,,3005\nN04", "6000000,,25,-90,3005\nN04")},
         15,
         {("wells", "water_depth_negative"): 1, ("readings", "well_rejected"): 1},
     ),

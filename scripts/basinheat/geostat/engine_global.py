@@ -259,7 +259,7 @@ class GlobalKriging:
     def _predict(
         self, parts: Iterator[tuple[Array, Array]], cells: int, own: float | None
     ) -> Prediction:
-        """Predict block by block; without ``own``, the prior variance, no variance is worked out."""
+        """Predict block by block; without ``own``, the prior variance, the variance stays 0."""
         self._need_values()
         m = self._modes.mean.size
         mean, variance, cross = np.empty(cells), np.zeros(cells), np.empty((cells, m))

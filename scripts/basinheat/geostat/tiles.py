@@ -122,4 +122,3 @@ def _tiles(xy: Array, places: Array) -> Iterator[Whole]:
     for rows in np.split(order, new):
         for start in range(0, len(rows), PLACES_A_TILE):
             yield rows[start : start + PLACES_A_TILE]
-

@@ -179,8 +179,8 @@ def _place(name: str, header: list[str], path: str | Path) -> int:
 
     if name in header:
         raise UserError(
-            f'{path}: the header "{name}" stands there {header.count(name)} times. Rename or remove '
-            "all but one."
+            f'{path}: the header "{name}" stands there {header.count(name)} times. Rename or '
+            "remove all but one."
         )
     near = get_close_matches(name, header, 1) or header
     raise UserError(f'{path}: there is no column "{name}"; the nearest is "{near[0]}".')

@@ -25,13 +25,11 @@ Whole = NDArray[np.int64]
 FIRST_GUESS_W_M2 = 0.065  # mean of the continents, Pollack et al. (1993), read
 SAMPLE = 1000  # wells are enough for the regional heat flow
 BLOCK = 2000  # wells at a time: bounds the memory
-OWN_SHARE = (
-    0.8  # of an interval that the well's own layers must fill for the interval to be its own
-)
+OWN_SHARE = 0.8  # of an interval: what a well's own layers must fill for it to be its own
 SMALLEST_STD_LN = 0.01
 
 
-class Readings:
+class Wanted:
     """The r places where resistances are wanted: arrays (r,).
 
     Parameters
@@ -63,7 +61,7 @@ class Readings:
 class Passes:
     """The rock model integrated for blocks of wells, so that memory stays bounded."""
 
-    def __init__(self, model: RockModel, surface_degc: Array, readings: Readings) -> None:
+    def __init__(self, model: RockModel, surface_degc: Array, readings: Wanted) -> None:
         self.model, self.surface_degc, self.readings = model, surface_degc, readings
 
     def run(self, wells: Whole, flow: Array) -> Iterator[Block]:
@@ -154,7 +152,7 @@ def second_pass(
     return rows, {name: np.concatenate([p[name] for p in points]) for name in names}
 
 
-def _single(block: Block, readings: Readings) -> Array:
+def _single(block: Block, readings: Wanted) -> Array:
     """Return the heat flow that each temperature of a block shows on its own, NaN where unused."""
     resistance, radiogenic = block.at_readings()
     total = resistance.sum(1)

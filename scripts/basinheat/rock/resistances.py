@@ -14,7 +14,7 @@ from basinheat.conductivity import catalogue
 from basinheat.rock import regionalflow, section
 from basinheat.rock.beds import prepare_beds
 from basinheat.rock.model import ORIGINS, Below, RockModel
-from basinheat.rock.passes import Passes, Readings, first_pass, regional_flow, second_pass
+from basinheat.rock.passes import Passes, Wanted, first_pass, regional_flow, second_pass
 from basinheat.settings.heat import Conductivity, HeatFlow
 from basinheat.tables import Resistances, Sources, StructurePoints
 from basinheat.tables.sources import LITHOLOGY, PRODUCTION, ROCK
@@ -110,13 +110,13 @@ def _variants(model: RockModel) -> dict[str, RockModel]:
     return variants
 
 
-def _readings(estimates: pd.DataFrame, wells: pd.DataFrame) -> Readings:
+def _readings(estimates: pd.DataFrame, wells: pd.DataFrame) -> Wanted:
     """Return where resistances are wanted, wells as places."""
     well = pd.Index(wells["well"]).get_indexer(estimates["well"])
     if (well < 0).any():
         raise KeyError("estimates name wells that the table of wells does not hold")
     surface = wells["surface_temperature_degc"].to_numpy(float)
-    return Readings(
+    return Wanted(
         well,
         estimates["depth_m"].to_numpy(float),
         estimates["temperature_degc"].to_numpy(float) - surface[well],
@@ -125,7 +125,7 @@ def _readings(estimates: pd.DataFrame, wells: pd.DataFrame) -> Readings:
 
 
 def _model(
-    readings: Readings, wells: pd.DataFrame, layers: pd.DataFrame, settings: Conductivity
+    readings: Wanted, wells: pd.DataFrame, layers: pd.DataFrame, settings: Conductivity
 ) -> tuple[RockModel, pd.DataFrame]:
     """Put the rock model together."""
     rocks = catalogue.load(settings.catalogue)
