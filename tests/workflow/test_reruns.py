@@ -73,7 +73,8 @@ def project(finished):
 
 
 def test_a_run_says_where_its_delivery_is(finished):
-    assert "Done: results/small" in finished.said
+    told = finished.said.split("Done. Look at:")[1].split()
+    assert {"results/small/wells", "results/small/base/delivery"} <= set(told)
     assert (finished.here / "results/small/base/delivery/manifest.json").is_file()
 
 
