@@ -103,8 +103,11 @@ def test_formulas_grow_with_depth(formula, depth_m, deeper_m):
 
 
 def test_regions():
-    """METHODS A12 (common practice): 8 K at home, 12 K elsewhere; Förster refuses elsewhere."""
-    readings = table_of([{"temperature_degc": 50.0, "depth_m": 1500.0}])
+    """METHODS A12 (common practice): 8 K at home, 12 K elsewhere; Förster refuses elsewhere.
+
+    In the middle of the formula's depths: away from it the slope of its error adds to that.
+    """
+    readings = table_of([{"temperature_degc": 50.0, "depth_m": 1950.0}])
     totals = {}
     for region in ("oklahoma", None):
         settings = Correction(order=["forster1997", "harrison1983"], region=region)
