@@ -10,6 +10,7 @@ rule prepare_wells:
     input:
         tables=input_tables(BASE.inputs, FOLDER),
         elevation=SECTIONS["base"]["inputs"]["rasters"]["elevation"] or [],
+        surface=SECTIONS["base"]["inputs"]["rasters"]["surface_temperature"] or [],
     output:
         wells="results/{run}/wells/wells.parquet",
         readings="results/{run}/wells/readings.parquet",
@@ -28,7 +29,10 @@ rule prepare_wells:
         settings=BASE.model_dump(
             mode="json",
             include={
-                **dict.fromkeys(("run", "crs", "inputs", "screening"), True),
+                **dict.fromkeys(
+                    ("run", "crs", "inputs", "screening", "surface_temperature"),
+                    True,
+                ),
                 "correction": {"reading_std_k", "same_depth_m"},
             },
         ),

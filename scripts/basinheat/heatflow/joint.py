@@ -99,20 +99,25 @@ def column_of(basin: Basin, rock: Floats, regional: float, scales: Floats) -> Co
     explain the map away and pull it low.
     """
     ln_k, rest = np.split(rock, [len(basin.ln_std)])
-    change = np.exp(-basin.ln_std * ln_k)
+    # relative changes multiply, as they do in the rebuilt columns: large amplitudes then agree too
+    nominal = basin.resistance.sum(1) + basin.resistance_fixed
+    relative = basin.change / nominal[:, None]
+    all_rock = np.exp(relative @ rest)
+    change = np.exp(-basin.ln_std * ln_k) * all_rock[:, None]
     resistance, radiogenic = basin.resistance * change, basin.radiogenic * change
-    below = radiogenic.sum(1) + basin.radiogenic_fixed
+    total = resistance.sum(1) + basin.resistance_fixed * all_rock
+    below = radiogenic.sum(1) + basin.radiogenic_fixed * all_rock
     conductivity = -(regional * resistance - radiogenic) * basin.ln_std
     scale = scales[basin.scale_class]
     return Column(
         well=basin.well,
-        resistance=resistance.sum(1) + basin.resistance_fixed + basin.change @ rest,
+        resistance=total,
         excess=basin.temperature - basin.surface + below,
         loadings=np.column_stack(
             [
                 basin.loadings + basin.surface_shift,
                 conductivity,
-                regional * basin.change,
+                (regional * total - below)[:, None] * relative,
                 -np.outer(below, basin.production_std),
             ]
         ),

@@ -207,10 +207,12 @@ def _resistance(
     ln_std = sources["prior_std"].to_numpy()[lithology]
     parts = rock[[f"resistance_{name}" for name in names[lithology]]].to_numpy()
     change = rock[[f"change_{name}" for name in names[other]]].to_numpy()
+    nominal = rock["resistance_m2k_w"].to_numpy()
+    relative = change / nominal[:, None]
     changed = parts * np.exp(-ln_std * joint.mean[lithology])
-    resistance = rock["resistance_m2k_w"].to_numpy() + (changed - parts).sum(1)
-    resistance = resistance + change @ joint.mean[other]
-    share = np.hstack([-changed * ln_std, change]) / resistance[:, None]
+    level = nominal + (changed - parts).sum(1)
+    resistance = level * np.exp(relative @ joint.mean[other])
+    share = np.hstack([-changed * ln_std / level[:, None], relative])
     kept = np.flatnonzero(lithology).tolist() + np.flatnonzero(other).tolist()
     variance = np.einsum("ij,jk,ik->i", share, joint.posterior[np.ix_(kept, kept)], share)
     variance += (rock["resistance_std_m2k_w"].to_numpy() / resistance) ** 2
