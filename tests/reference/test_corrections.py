@@ -8,14 +8,14 @@ import pytest
 from mud_cooling import table_of, wells_of
 
 from basinheat.corrections import METHODS, correct
-from basinheat.corrections.forster1997 import correction_k as forster_k
-from basinheat.corrections.harrison1983 import VERTEX_M, parabola_k
-from basinheat.corrections.harrison1983 import correction_k as harrison_k
-from basinheat.corrections.horner import horner_time
-from basinheat.corrections.kehle_gregory import SUMMIT_FT, cubic_f
-from basinheat.corrections.kehle_gregory import correction_k as kehle_k
-from basinheat.corrections.response import Mud, simulate
-from basinheat.corrections.time_lines import fit_line
+from basinheat.corrections.methods.forster1997 import correction_k as forster_k
+from basinheat.corrections.methods.harrison1983 import VERTEX_M, parabola_k
+from basinheat.corrections.methods.harrison1983 import correction_k as harrison_k
+from basinheat.corrections.methods.horner import horner_time
+from basinheat.corrections.methods.kehle_gregory import SUMMIT_FT, cubic_f
+from basinheat.corrections.methods.kehle_gregory import correction_k as kehle_k
+from basinheat.corrections.methods.time_lines import fit_line
+from basinheat.corrections.recovery.response import Mud, simulate
 from basinheat.settings.heat import Correction
 
 # Published readings: P. Glover, Petrophysics MSc course notes, Aberdeen 2000, pp. 305-306.

@@ -11,22 +11,22 @@ from mud_cooling import table_of, wells_of
 from scipy.special import exp1, k0e, k1e
 
 from basinheat.corrections import METHODS, correct
-from basinheat.corrections.brennand1984 import brennand_time
-from basinheat.corrections.bullard1947 import cooling_ratio, formation_degc
-from basinheat.corrections.cylinder_source import share_left
-from basinheat.corrections.generalised_horner import (
+from basinheat.corrections.methods.brennand1984 import brennand_time
+from basinheat.corrections.methods.bullard1947 import cooling_ratio, formation_degc
+from basinheat.corrections.methods.cylinder_source import share_left
+from basinheat.corrections.methods.generalised_horner import (
     adjusted_share,
     generalised_time,
     wall_temperature,
 )
-from basinheat.corrections.horner import horner_time
-from basinheat.corrections.instantaneous_line_source import inverse_time
-from basinheat.corrections.response import Mud, simulate
-from basinheat.corrections.time_lines import fit_line
-from basinheat.corrections.time_plot import rest
-from basinheat.corrections.waples2001 import factor as malay_factor
-from basinheat.corrections.waples2004 import added_k
-from basinheat.corrections.waples2004 import factor as campeche_factor
+from basinheat.corrections.methods.horner import horner_time
+from basinheat.corrections.methods.instantaneous_line_source import inverse_time
+from basinheat.corrections.methods.time_lines import fit_line
+from basinheat.corrections.methods.time_plot import rest
+from basinheat.corrections.methods.waples2001 import factor as malay_factor
+from basinheat.corrections.methods.waples2004 import added_k
+from basinheat.corrections.methods.waples2004 import factor as campeche_factor
+from basinheat.corrections.recovery.response import Mud, simulate
 from basinheat.settings.heat import Correction
 
 A3_H, A3_DEGC = np.array([[6.0, 12.0, 20.0]]), np.array([[82.0, 88.5, 91.9]])

@@ -11,13 +11,13 @@ from mud_cooling import table_of, wells_of
 
 from basinheat import tables
 from basinheat.corrections import METHODS, correct
-from basinheat.corrections.forster1997 import correction_k as forster_k
 from basinheat.corrections.gather import KINDS, gather
-from basinheat.corrections.harrison1983 import correction_k as harrison_k
-from basinheat.corrections.horner import horner_time
-from basinheat.corrections.kehle_gregory import correction_k as kehle_k
 from basinheat.corrections.method import Context
-from basinheat.corrections.time_lines import fit_line
+from basinheat.corrections.methods.forster1997 import correction_k as forster_k
+from basinheat.corrections.methods.harrison1983 import correction_k as harrison_k
+from basinheat.corrections.methods.horner import horner_time
+from basinheat.corrections.methods.kehle_gregory import correction_k as kehle_k
+from basinheat.corrections.methods.time_lines import fit_line
 from basinheat.corrections.trend import RegionalTrend
 from basinheat.settings.heat import Correction, Method, Region
 

@@ -6,10 +6,10 @@ from hypothesis import given
 from hypothesis import strategies as st
 from mud_cooling import left_on_axis
 
-from basinheat.corrections.learning import learn_law
-from basinheat.corrections.recovery import Block, CoolingLaw, deviance, recover
-from basinheat.corrections.response import Mud, Response, response, simulate
-from basinheat.corrections.times import TimePrior, cooling_left
+from basinheat.corrections.recovery.cooling import Block, CoolingLaw, deviance, recover
+from basinheat.corrections.recovery.learning import learn_law
+from basinheat.corrections.recovery.response import Mud, Response, response, simulate
+from basinheat.corrections.recovery.times import TimePrior, cooling_left
 
 MUD = Mud(1.65, 0.30)
 LAW = CoolingLaw(2.0, 0.35, 0.12, 1.0)

@@ -8,13 +8,13 @@ from hypothesis import strategies as st
 from mud_cooling import judged, left_on_axis, make_basin, table_of, wells_of
 
 from basinheat.corrections import METHODS, correct
-from basinheat.corrections.brennand1984 import PLOT as BRENNAND
-from basinheat.corrections.bullard1947 import cooling_ratio, formation_degc
-from basinheat.corrections.cylinder_source import PLOT as CYLINDER
-from basinheat.corrections.generalised_horner import PLOT as GENERALISED
-from basinheat.corrections.horner import PLOT as HORNER
-from basinheat.corrections.instantaneous_line_source import PLOT as AT_ONCE
-from basinheat.corrections.time_lines import fit_line
+from basinheat.corrections.methods.brennand1984 import PLOT as BRENNAND
+from basinheat.corrections.methods.bullard1947 import cooling_ratio, formation_degc
+from basinheat.corrections.methods.cylinder_source import PLOT as CYLINDER
+from basinheat.corrections.methods.generalised_horner import PLOT as GENERALISED
+from basinheat.corrections.methods.horner import PLOT as HORNER
+from basinheat.corrections.methods.instantaneous_line_source import PLOT as AT_ONCE
+from basinheat.corrections.methods.time_lines import fit_line
 from basinheat.settings.heat import Correction
 
 PLOTS = (HORNER, GENERALISED, CYLINDER, AT_ONCE, BRENNAND)

@@ -6,14 +6,14 @@ import pytest
 from mud_cooling import judged, make_basin
 
 from basinheat.corrections import correct
-from basinheat.corrections.horner import horner_time
-from basinheat.corrections.recovery_sources import (
+from basinheat.corrections.methods.horner import horner_time
+from basinheat.corrections.methods.time_lines import fit_line
+from basinheat.corrections.recovery.sources import (
     CAPACITY_STD,
     CONDUCTIVITY_LN_STD,
     DIFFUSIVITY_LN_STD,
     MUD,
 )
-from basinheat.corrections.time_lines import fit_line
 from basinheat.settings.heat import Correction
 
 # Mud and rock in prior standard deviations from what is assumed, in pairs of opposite sign: the

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from types import MappingProxyType
 
-from basinheat.corrections import (
+from basinheat.corrections.methods import (
     brennand1984,
     bullard1947,
     conductive_recovery,

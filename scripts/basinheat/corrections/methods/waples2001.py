@@ -5,7 +5,7 @@ from __future__ import annotations
 import numpy as np
 
 from basinheat.corrections.method import Context, Floats, Method, Outcome, Reference, Uncertainty
-from basinheat.corrections.rise_factor import multiply_rise
+from basinheat.corrections.methods.rise_factor import multiply_rise
 from basinheat.corrections.sets import ReadingSets
 
 # Waples & Mahadir Ramly (2001), Petrol. Geosci. 7, 231-240; all from memory, doubtful.

@@ -4,8 +4,8 @@ from __future__ import annotations
 
 import numpy as np
 
-from basinheat.corrections.depth_formula import add_correction
 from basinheat.corrections.method import Context, Floats, Method, Outcome, Reference, Uncertainty
+from basinheat.corrections.methods.depth_formula import add_correction
 from basinheat.corrections.sets import ReadingSets
 
 # As published: °F of a temperature difference, depth in feet; cubic, quadratic, linear, constant.

@@ -10,7 +10,7 @@ from numpy.typing import NDArray
 from scipy.optimize import minimize
 from scipy.stats import chi2
 
-from basinheat.corrections.recovery import Block, CoolingLaw, deviance, recover
+from basinheat.corrections.recovery.cooling import Block, CoolingLaw, deviance, recover
 
 Floats = NDArray[np.float64]
 

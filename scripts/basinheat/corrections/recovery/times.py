@@ -8,7 +8,7 @@ import numpy as np
 from numpy.typing import NDArray
 from scipy.special import ndtri
 
-from basinheat.corrections.response import Response
+from basinheat.corrections.recovery.response import Response
 from basinheat.corrections.sets import ReadingSets
 
 Floats = NDArray[np.float64]

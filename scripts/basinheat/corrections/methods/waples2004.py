@@ -5,7 +5,7 @@ from __future__ import annotations
 import numpy as np
 
 from basinheat.corrections.method import Context, Floats, Method, Outcome, Reference, Uncertainty
-from basinheat.corrections.rise_factor import multiply_rise
+from basinheat.corrections.methods.rise_factor import multiply_rise
 from basinheat.corrections.sets import ReadingSets
 
 # Waples, Pacheco & Vera (2004), Petrol. Geosci. 10, 239-245; seen in the abstract.

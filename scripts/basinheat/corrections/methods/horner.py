@@ -5,8 +5,8 @@ from __future__ import annotations
 import numpy as np
 
 from basinheat.corrections.method import Context, Floats, Method, Outcome, Reference, Uncertainty
+from basinheat.corrections.methods.time_plot import REASONS, SHARED_K, Plot, carry_to_rest
 from basinheat.corrections.sets import ReadingSets
-from basinheat.corrections.time_plot import REASONS, SHARED_K, Plot, carry_to_rest
 
 # METHODS A12: three good points, two points or a warning, two points and a warning (the last: no
 # source).

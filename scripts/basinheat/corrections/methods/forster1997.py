@@ -6,8 +6,12 @@ from dataclasses import replace
 
 import numpy as np
 
-from basinheat.corrections.depth_formula import OUTSIDE_DEPTHS, OUTSIDE_REGION, add_correction
 from basinheat.corrections.method import Context, Floats, Method, Outcome, Reference, Uncertainty
+from basinheat.corrections.methods.depth_formula import (
+    OUTSIDE_DEPTHS,
+    OUTSIDE_REGION,
+    add_correction,
+)
 from basinheat.corrections.sets import ReadingSets
 
 # Förster, Merriam & Davis (1997), Geol. Rundsch. 86, read in open code: K/m and K.

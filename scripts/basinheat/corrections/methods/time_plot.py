@@ -10,10 +10,10 @@ from numpy.typing import NDArray
 from scipy.stats import t as student
 
 from basinheat.corrections.method import Context, Flags, Floats, Loading, Outcome, Uncertainty
-from basinheat.corrections.response import Mud, response
+from basinheat.corrections.methods.time_lines import Line, fit_line
+from basinheat.corrections.recovery.response import Mud, response
+from basinheat.corrections.recovery.times import NODES, WEIGHTS
 from basinheat.corrections.sets import ReadingSets
-from basinheat.corrections.time_lines import Line, fit_line
-from basinheat.corrections.times import NODES, WEIGHTS
 
 # Thresholds of METHODS A1 (common practice, supported by the simulations A6).
 _FARTHEST_M, _FARTHEST_SHARE = 50.0, 0.01

@@ -7,11 +7,11 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from basinheat.corrections.learning import Learned, learn_law, thin
-from basinheat.corrections.recovery import Block, recover
-from basinheat.corrections.response import Mud, response
+from basinheat.corrections.recovery.cooling import Block, recover
+from basinheat.corrections.recovery.learning import Learned, learn_law, thin
+from basinheat.corrections.recovery.response import Mud, response
+from basinheat.corrections.recovery.times import TimePrior, cooling_left
 from basinheat.corrections.sets import Floats, ReadingSets
-from basinheat.corrections.times import TimePrior, cooling_left
 from basinheat.corrections.trend import RegionalTrend
 
 _RESCALINGS = 2

@@ -3,8 +3,7 @@
 from __future__ import annotations
 
 from basinheat.corrections.method import Context, Floats, Method, Outcome, Reference, Uncertainty
-from basinheat.corrections.sets import ReadingSets
-from basinheat.corrections.time_plot import (
+from basinheat.corrections.methods.time_plot import (
     COOLER,
     REASONS,
     SHARED_K,
@@ -13,6 +12,7 @@ from basinheat.corrections.time_plot import (
     cooler,
     refuse_more,
 )
+from basinheat.corrections.sets import ReadingSets
 
 # METHODS A12 has none for this method: as for the cylinder source; a warning 2 K more (no source).
 _FLOORS_K = (7.0, 7.0, 9.0, 9.0)

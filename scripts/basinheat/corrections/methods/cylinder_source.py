@@ -5,8 +5,7 @@ from __future__ import annotations
 import numpy as np
 
 from basinheat.corrections.method import Context, Floats, Method, Outcome, Reference, Uncertainty
-from basinheat.corrections.sets import ReadingSets
-from basinheat.corrections.time_plot import (
+from basinheat.corrections.methods.time_plot import (
     COOLER,
     REASONS,
     SHARED_K,
@@ -17,6 +16,7 @@ from basinheat.corrections.time_plot import (
     refuse_more,
     rest,
 )
+from basinheat.corrections.sets import ReadingSets
 
 # METHODS A12: 7 K from two readings on; a warning 2 K more (no source).
 _FLOORS_K = (7.0, 7.0, 9.0, 9.0)

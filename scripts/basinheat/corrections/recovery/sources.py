@@ -6,12 +6,12 @@ from dataclasses import replace
 
 import numpy as np
 
-from basinheat.corrections.learning import relearn_law
 from basinheat.corrections.method import Loading
-from basinheat.corrections.recovery_fit import Case, Fit, arrange, least_rise
-from basinheat.corrections.response import Mud
+from basinheat.corrections.recovery.fit import Case, Fit, arrange, least_rise
+from basinheat.corrections.recovery.learning import relearn_law
+from basinheat.corrections.recovery.response import Mud
+from basinheat.corrections.recovery.times import TimePrior
 from basinheat.corrections.sets import Floats, ReadingSets
-from basinheat.corrections.times import TimePrior
 
 # Mud over rock: water-based mud 3.8 of 2.5 to 4.0, rock 2.3 of 2.0 to 2.5 MJ/(m3 K); mud 0.7 of
 # 0.6 to 0.8, rock 2.3 W/(m K), as its diffusivity demands (METHODS A7, common practice).

@@ -16,17 +16,17 @@ from basinheat.corrections.method import (
     Reference,
     Uncertainty,
 )
-from basinheat.corrections.recovery_sources import MUD
-from basinheat.corrections.response import Mud, response
-from basinheat.corrections.sets import ReadingSets
-from basinheat.corrections.time_plot import (
+from basinheat.corrections.methods.time_plot import (
     COOLER,
     SHARED_K,
     SHARED_OF_BIAS,
     circulation_of,
     rest,
 )
-from basinheat.corrections.times import NODES, WEIGHTS
+from basinheat.corrections.recovery.response import Mud, response
+from basinheat.corrections.recovery.sources import MUD
+from basinheat.corrections.recovery.times import NODES, WEIGHTS
+from basinheat.corrections.sets import ReadingSets
 
 # METHODS A12 has none for this method: as for Horner's plot of two points (common practice).
 _FLOOR_K = 8.0

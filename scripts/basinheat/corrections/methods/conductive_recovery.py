@@ -6,12 +6,12 @@ from dataclasses import asdict
 
 import numpy as np
 
-from basinheat.corrections.learning import misfit_limit
 from basinheat.corrections.method import Context, Method, Outcome, Reference, Uncertainty
-from basinheat.corrections.recovery_fit import Case, Fit, fit_basin
-from basinheat.corrections.recovery_sources import MUD, sources
+from basinheat.corrections.recovery.fit import Case, Fit, fit_basin
+from basinheat.corrections.recovery.learning import misfit_limit
+from basinheat.corrections.recovery.sources import MUD, sources
+from basinheat.corrections.recovery.times import TimePrior, learn_times
 from basinheat.corrections.sets import ReadingSets
-from basinheat.corrections.times import TimePrior, learn_times
 
 # A correction below zero by more than this many standard uncertainties of the reading is refused.
 _COOLER = 3.0

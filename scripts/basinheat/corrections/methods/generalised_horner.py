@@ -5,8 +5,7 @@ from __future__ import annotations
 import numpy as np
 
 from basinheat.corrections.method import Context, Floats, Method, Outcome, Reference, Uncertainty
-from basinheat.corrections.sets import ReadingSets
-from basinheat.corrections.time_plot import (
+from basinheat.corrections.methods.time_plot import (
     COOLER,
     REASONS,
     SHARED_K,
@@ -16,6 +15,7 @@ from basinheat.corrections.time_plot import (
     refuse_more,
     rest,
 )
+from basinheat.corrections.sets import ReadingSets
 
 # Kutasov & Eppelbaum (2005), from memory, then checked against exact solutions: the wall of a
 # cylinder of constant flux to 0.15 %, the heat of one of constant temperature to 1 %.
