@@ -9,6 +9,7 @@ lattice, cells = grid.define(
     tables.Wells.load(snakemake.input.wells),
     tables.Readings.load(snakemake.input.readings),
     Settings(**snakemake.params.settings),
+    tables.HeatFlowPoints.load(snakemake.input.published),
 )
 lattice.to_json(snakemake.output.grid)
 tables.Cells.save(cells, snakemake.output.cells)

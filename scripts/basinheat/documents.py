@@ -1,4 +1,4 @@
-"""Small records between stages, as JSON: a variogram, a grid, scores."""
+"""Small records between stages, as JSON, and pages of text: files that appear whole."""
 
 from __future__ import annotations
 
@@ -17,10 +17,15 @@ def save(record: Mapping[str, Any], path: str | Path) -> None:
     Rounded as in the tables: the last bits of a sum must not change a file. What is no finite
     number is written as null, since JSON knows no other word for it.
     """
+    text = json.dumps(_plain(record), indent=2, sort_keys=True, ensure_ascii=False)
+    write_text(f"{text}\n", path)
+
+
+def write_text(text: str, path: str | Path) -> None:
+    """Write text as UTF-8 with plain line ends, whole or not at all."""
     part = Path(f"{path}.part")
     part.parent.mkdir(parents=True, exist_ok=True)
-    text = json.dumps(_plain(record), indent=2, sort_keys=True, ensure_ascii=False)
-    part.write_text(f"{text}\n", encoding="utf-8")
+    part.write_text(text, encoding="utf-8", newline="\n")
     os.replace(part, path)
 
 

@@ -1,21 +1,13 @@
-"""The same well or the same reading written down more than once."""
+"""The same reading written down more than once."""
 
 from __future__ import annotations
 
 import numpy as np
 import pandas as pd
 
-from basinheat.flags import mark
 from basinheat.ledger import Ledger
 from basinheat.readers import InputTable
 
-_WELL_VALUES = [
-    "ground_elevation",
-    "datum_elevation",
-    "water_depth",
-    "total_depth",
-    "surface_temperature",
-]
 _READING_NUMBERS = [
     "depth",
     "vertical_depth",
@@ -27,77 +19,19 @@ _READING_NUMBERS = [
     "mud_temperature",
 ]
 _READING_WORDS = ["well", "kind", "date", "log_run"]
+_READING_MAYBE = ["circulation_stopped", "logger_on_bottom"]
+_NUMBERS_MAYBE = ["drilling", "casing_shoe"]
 _DETAILS = [
     "vertical_depth",
     "temperature_std",
     "since_circulation",
     "circulation",
+    "drilling",
     "hole_diameter",
     "mud_temperature",
     "date",
     "log_run",
 ]
-
-
-def one_row_a_well(table: InputTable, ledger: Ledger, distance_m: float) -> InputTable:
-    """Leave one row of each well.
-
-    Rows of one name that lie within ``distance_m`` of each other are one well: the fullest row
-    stays, its blanks are filled from the others, and the others are ``merged``. Rows further apart
-    are in conflict: those that agree with more than half of the rows stay, and without such a
-    majority none does, because readings could not be attributed. All refused rows are listed.
-
-    Parameters
-    ----------
-    table : InputTable
-        Wells with ``easting_m, northing_m``.
-    ledger : Ledger
-        Takes the refused rows.
-    distance_m : float
-        Largest distance between rows of one well, m.
-    """
-    if not table.frame["well"].duplicated().any():
-        return table
-    table = _agreeing(table, ledger, distance_m)
-    frame = table.frame
-    filled = frame[_WELL_VALUES].notna().sum(axis=1)
-    keys = ["easting_m", "northing_m", *_WELL_VALUES, "source_file", "source_line"]
-    ordered = frame.assign(_blank=-filled).sort_values(["well", "_blank", *keys], kind="stable")
-    again = ordered["well"].duplicated()
-    rows = ordered.groupby("well", sort=False)[_WELL_VALUES]
-    spread = rows.transform("max") - rows.transform("min")
-    ordered[_WELL_VALUES] = rows.transform("first")
-    ordered = ordered.drop(columns="_blank").reset_index(drop=True)
-    mark(ordered, (spread > 1.0).any(axis=1).to_numpy(), "rows_disagree")
-    sentence = "the well stands in another row, whose blanks are filled from this one."
-    table = table.with_frame(ordered)
-    return ledger.refuse(table, again.to_numpy(), "well", "merged", sentence)
-
-
-def _agreeing(table: InputTable, ledger: Ledger, distance_m: float) -> InputTable:
-    """Refuse rows of one well that lie apart, but for a majority that lies together."""
-    frame = table.frame
-    places = frame.groupby("well")[["easting_m", "northing_m"]]
-    width = places.transform("max") - places.transform("min")
-    apart = np.hypot(width["easting_m"], width["northing_m"]).to_numpy()
-    middle = frame[["easting_m", "northing_m"]] - places.transform("median")
-    # Half the distance: then any two of the rows that stay lie within the whole of it.
-    near = np.hypot(middle["easting_m"], middle["northing_m"]).to_numpy() <= distance_m / 2.0
-    share = pd.Series(near).groupby(frame["well"].to_numpy()).transform("mean").to_numpy()
-    conflict = (apart > distance_m) & ~(near & (share > 0.5))
-    if not conflict.any():
-        return table
-    frame = frame.assign(_apart=apart / 1000.0)
-    lines = frame["source_file"] + ", line " + frame["source_line"].astype(str)
-    text = lines.sort_values().groupby(frame["well"]).agg("; ".join)
-    frame["_rows"] = frame["well"].map(text)
-    table = table.with_frame(frame)
-    sentence = (
-        "rows of this well lie up to {_apart:.1f} km apart ({_rows}) and no majority of them lies "
-        "together. Mend the coordinates, or give different wells different names."
-    )
-    out = ledger.refuse(table, conflict, "x", "well_location_conflict", sentence)
-    return out.with_frame(out.frame.drop(columns=["_apart", "_rows"]))
 
 
 def reading_ids(frame: pd.DataFrame) -> np.ndarray:
@@ -124,6 +58,14 @@ def reading_ids(frame: pd.DataFrame) -> np.ndarray:
         mixed = (mixed ^ part) * multiplier
     for name in _READING_WORDS:
         mixed = (mixed ^ _hashed(frame[name])) * multiplier
+    for name in _READING_MAYBE:
+        # Where it is not noted, the identity is that of a table without the column.
+        noted = (frame[name] != "").to_numpy(bool)
+        mixed[noted] = (mixed[noted] ^ _hashed(frame.loc[noted, name])) * multiplier
+    for name in _NUMBERS_MAYBE:
+        noted = frame[name].notna().to_numpy(bool)
+        part = pd.util.hash_array(np.round(frame.loc[noted, name].to_numpy(float), 6) + 0.0)
+        mixed[noted] = (mixed[noted] ^ part) * multiplier
     return np.array([f"r{value:016x}" for value in mixed.tolist()], object)
 
 
@@ -132,23 +74,20 @@ def _hashed(text: pd.Series) -> np.ndarray:
 
 
 def merged(table: InputTable, ledger: Ledger) -> InputTable:
-    """Leave one of readings that say the same.
+    """Leave one of readings that say the same, and the first of those that contradict each other.
 
     Exact copies are merged, and so is a reading that agrees with another of the same well, depth,
-    temperature and kind in all it states and states less.
+    temperature and kind in all it states and states less. A reading of the same well, kind,
+    depth, date and log run with another temperature in a later file is a ``reading_conflict``.
 
     Parameters
     ----------
     table : InputTable
-        Readings with ``reading_id``.
+        Readings in the order of the files, with ``reading_id``.
     ledger : Ledger
         Takes the rows that are merged away.
     """
-    copies = table.frame[table.frame.duplicated("reading_id", keep=False)]
-    order = ["reading_id", "source_file", "source_line"]
-    copies = copies[order].sort_values(order, kind="stable")
-    again = np.zeros(len(table), bool)
-    again[copies.index[copies["reading_id"].duplicated()]] = True
+    again = table.frame["reading_id"].duplicated().to_numpy()
     table = ledger.refuse(table, again, "", "merged", "the same reading stands in another row.")
     key = ["well", "depth", "temperature", "kind"]
     twins = np.flatnonzero(table.frame.duplicated(key, keep=False).to_numpy())
@@ -156,7 +95,45 @@ def merged(table: InputTable, ledger: Ledger) -> InputTable:
     if len(twins):
         less[twins] = _says_less(table.frame.iloc[twins], key)
     sentence = "another row of the same well, depth and temperature says the same and more."
-    return ledger.refuse(table, less, "", "merged", sentence)
+    table = ledger.refuse(table, less, "", "merged", sentence)
+    return _first_file_counts(table, ledger)
+
+
+def _first_file_counts(table: InputTable, ledger: Ledger) -> InputTable:
+    """Refuse what a later file says otherwise of a reading that date and log run single out."""
+    frame = table.frame
+    named = np.flatnonzero(((frame["date"] != "") & (frame["log_run"] != "")).to_numpy())
+    some = frame.iloc[named]
+    depth = some["depth"].fillna(some["vertical_depth"]).round(2)
+    key = some[["well", "kind", "date", "log_run"]].assign(depth=depth)
+    twice = key.duplicated(keep=False).to_numpy()
+    named, key, some = named[twice], key[twice], some[twice]
+    if not len(named):
+        return table
+    group = key.groupby([*key], dropna=False, sort=False).ngroup().to_numpy()
+    file = pd.factorize(some["source_file"])[0]
+    first = np.zeros(group.max() + 1, np.int64)
+    first[group[::-1]] = np.arange(len(group))[::-1]
+    of_first = file == file[first[group]]
+    said = pd.MultiIndex.from_arrays([group, some["temperature"].round(6)])
+    otherwise = ~of_first & ~said.isin(said[of_first])
+    conflict = np.zeros(len(frame), bool)
+    conflict[named[otherwise]] = True
+    counts = some.iloc[first[group]]
+    place = counts["source_file"].astype(object) + ", line " + counts["source_line"].astype(str)
+    frame["_counts"], frame["_place"] = np.nan, ""
+    frame.iloc[named, -2] = counts["temperature"].to_numpy(float)
+    frame.iloc[named, -1] = place.to_numpy(object)
+    table = ledger.screen(
+        table,
+        conflict,
+        "temperature",
+        "reading_conflict",
+        "the temperature of this depth, date and log run is {temperature:g} degC here and "
+        "{_counts:g} degC in {_place}, whose file is named first and counts.",
+    )
+    table = table.with_frame(table.frame.drop(columns=["_counts", "_place"]))
+    return table
 
 
 def _says_less(frame: pd.DataFrame, key: list[str]) -> np.ndarray:

@@ -13,8 +13,8 @@ class UserError(Exception):
     """
 
     def __init__(self, faults: str | list[str], heading: str = "") -> None:
-        self.faults = [faults] if isinstance(faults, str) else list(faults)
-        self.heading = heading
+        self.faults = [_line(fault) for fault in ([faults] if isinstance(faults, str) else faults)]
+        self.heading = _line(heading)
         super().__init__(str(self))
 
     def __str__(self) -> str:
@@ -22,3 +22,13 @@ class UserError(Exception):
         if not self.heading:
             return "\n".join(self.faults)
         return "\n".join([self.heading, *(f"  {fault}" for fault in self.faults)])
+
+
+def _line(text: str) -> str:
+    """Return text as one line that can be seen: what breaks, turns or hides it becomes an escape.
+
+    Names and values in a fault come from the user's files.
+    """
+    if text.isprintable():
+        return text
+    return "".join(c if c.isprintable() else c.encode("unicode_escape").decode() for c in text)

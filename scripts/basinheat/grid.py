@@ -113,13 +113,17 @@ class Grid:
 
 
 def define(
-    wells: pd.DataFrame, readings: pd.DataFrame, settings: Settings
+    wells: pd.DataFrame,
+    readings: pd.DataFrame,
+    settings: Settings,
+    published: pd.DataFrame | None = None,
 ) -> tuple[Grid, pd.DataFrame]:
     """Lay the grid, and describe the cells that have a basis.
 
     A cell has a basis where its centre lies inside ``maps.mask.polygon`` (if any) and within
     ``maps.mask.max_distance_km`` of a well that has a reading and is not held out
-    (``validation.holdout``): a well that tells no temperature supports no map.
+    (``validation.holdout``), or of a place of published heat flow: a well that tells no
+    temperature supports no map.
 
     Parameters
     ----------
@@ -130,6 +134,8 @@ def define(
     settings : Settings
         The scenario's settings; used are ``crs, maps, inputs.rasters, surface_temperature`` and
         ``validation.holdout``.
+    published : DataFrame, optional
+        ``tables.HeatFlowPoints``.
 
     Returns
     -------
@@ -147,6 +153,8 @@ def define(
     extent.check_crs(settings.crs)
     basis = _with_readings(wells, readings, settings.validation.holdout)
     bounds, polygon = extent.find(basis, settings.maps, settings.crs)
+    if published is not None and len(published):
+        basis = pd.concat([basis, published.assign(deepest_m=0.0)], ignore_index=True)
     grid = Grid.around(settings.crs, bounds, settings.maps.cell_size_m)
     if grid.rows * grid.cols > CELLS_LIMIT:
         raise UserError(

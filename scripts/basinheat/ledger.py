@@ -10,6 +10,7 @@ from basinheat.readers import InputTable
 from basinheat.tables import Rejected
 
 Sentence = str
+_EXPECTED = {"reading_id": object, "expected_degc": float, "score": float}
 
 
 class Ledger:
@@ -21,6 +22,8 @@ class Ledger:
 
     def __init__(self) -> None:
         self._parts: list[pd.DataFrame] = []
+        self._expected: list[pd.DataFrame] = []
+        self.spared: set[tuple[str, str, int]] = set()  # table, file, line
 
     def refuse(
         self, table: InputTable, mask: np.ndarray, column: str, code: str, sentence: Sentence
@@ -53,9 +56,17 @@ class Ledger:
         """Refuse rows, except those that a reviewer keeps: they carry the code as a flag."""
         mask = np.asarray(mask, bool)
         kept = table.frame["kept"].to_numpy(bool) if "kept" in table.frame else False
-        if (mask & kept).any():
-            mark(table.frame, mask & kept, code)
+        self.spare(table, mask & kept, code)
         return self.refuse(table, mask & ~kept, column, code, sentence)
+
+    def spare(self, table: InputTable, mask: np.ndarray, code: str) -> None:
+        """Flag rows that a rule would refuse and a reviewer keeps."""
+        if not mask.any():
+            return
+        for flag in (code, "reviewed_keep"):
+            mark(table.frame, mask, flag)
+        rows = table.frame.loc[mask, ["source_file", "source_line"]]
+        self.spared.update((table.name, *row) for row in rows.itertuples(index=False, name=None))
 
     def drop(
         self, table: InputTable, mask: np.ndarray, column: str, code: str, sentence: Sentence
@@ -93,6 +104,11 @@ class Ledger:
         frame = Rejected.conform(pd.concat(parts, ignore_index=True) if parts else Rejected.empty())
         return frame.sort_values(list(frame.columns), kind="stable").reset_index(drop=True)
 
+    def expected(self) -> pd.DataFrame:
+        """Return what the neighbours of refused readings led to expect, where that was known."""
+        nothing = pd.DataFrame({name: pd.Series(dtype=kind) for name, kind in _EXPECTED.items()})
+        return pd.concat(self._expected, ignore_index=True) if self._expected else nothing
+
     def _write(
         self,
         table: InputTable,
@@ -103,6 +119,8 @@ class Ledger:
         sentence: Sentence,
     ) -> None:
         rows = table.frame[mask]
+        if "expected_degc" in rows:
+            self._expected.append(rows[list(_EXPECTED)])
         written = rows.get(f"as_written:{column}", rows.get(column))
         written = pd.Series([""] * len(rows), index=rows.index) if written is None else written
         headers = table.header(column, rows["spec"])
@@ -116,7 +134,7 @@ class Ledger:
                     "table": label,
                     "source_file": rows["source_file"].to_numpy(),
                     "source_line": rows["source_line"].to_numpy(),
-                    "well": rows["well"].to_numpy(),
+                    "well": rows.get("as_written:well", rows["well"]).to_numpy(),
                     "column": headers if column else "",
                     "value": written.to_numpy(),
                     "code": code,

@@ -49,7 +49,7 @@ def crs_fault(crs: str, for_maps: bool = False) -> str:
 
     try:
         known = CRS.from_user_input(crs)
-    except CRSError:
+    except (CRSError, UnicodeError):
         return f'"{crs}" is no coordinate reference system; write it like EPSG:32631'
     if not for_maps:
         return ""

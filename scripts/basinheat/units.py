@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+from collections.abc import Sequence
 from fractions import Fraction
 from functools import cache
 from typing import Any
@@ -32,6 +33,27 @@ _ALIASES = {
     "V/V": "",
     "pu": "percent",
 }
+# How people and programs spell the usual ones, capitals aside.
+_SPELLINGS = {
+    **dict.fromkeys(("f", "degf", "deg f", "deg.f", "deg. f", "fahrenheit"), "degF"),
+    **dict.fromkeys(("degrees f", "degrees fahrenheit", "deg fahrenheit"), "degF"),
+    **dict.fromkeys(("c", "degc", "deg c", "deg.c", "deg. c", "celsius", "centigrade"), "degC"),
+    **dict.fromkeys(("degrees c", "degrees celsius", "deg celsius"), "degC"),
+    **dict.fromkeys(("k", "degk", "deg k", "kelvin"), "K"),
+    **dict.fromkeys(("ft", "ft.", "feet", "foot", "f.", "'"), "ft"),
+    **dict.fromkeys(("ftus", "usft", "us ft", "us survey foot", "us survey feet"), "survey_foot"),
+    **dict.fromkeys(("m", "m.", "mtr", "mtrs", "meter", "meters", "metre", "metres"), "m"),
+    **dict.fromkeys(("in", "in.", "inch", "inches", '"', "''"), "in"),
+    **dict.fromkeys(("h", "h.", "hr", "hr.", "hrs", "hrs.", "hour", "hours"), "h"),
+    **dict.fromkeys(("min", "min.", "mins", "minute", "minutes"), "min"),
+    **dict.fromkeys(("d", "day", "days"), "d"),
+    **dict.fromkeys(("%", "percent", "pct"), "percent"),
+    **{word: word for word in ("km", "cm", "mm")},
+}
+_MOST_UNUSUAL = 200
+_MARKS = str.maketrans({"º": "°", "˚": "°", "″": '"', "”": '"', "“": '"', "′": "'", "’": "'"})
+# What a unit in a cell may look like; anything else never reaches the library's parser.
+_UNIT = re.compile(r"[A-Za-zµμ°%\"'](?:[A-Za-zµμ°%\"' ./()*²³-]|(?<=[A-Za-z^-])[1-3])*")
 _EXAMPLES = {
     "m": "m, ft, km",
     "degC": "degC, degF, K",
@@ -54,6 +76,7 @@ _USUAL = {
     ("K", "degC"): (1.0, -273.15),
     ("min", "h"): (1.0 / 60.0, 0.0),
     ("d", "h"): (24.0, 0.0),
+    ("percent", ""): (0.01, 0.0),
 }
 
 
@@ -107,6 +130,51 @@ def conversion(spelling: str, unit: str) -> tuple[float, float]:
     return float(one - zero), float(zero)
 
 
+def named(word: str, unit: str) -> str | None:
+    """Return the unit that a word of a table names, None where it is none of a column's kind.
+
+    Parameters
+    ----------
+    word : str
+        As a cell has it, in any case.
+    unit : str
+        Unit of the column in the tables.
+
+    Examples
+    --------
+    >>> named("FEET", "m"), named("Deg F", "degC"), named("°F", "degC"), named("ft", "degC")
+    ('ft', 'degF', 'degF', None)
+    """
+    plain = " ".join(word.translate(_MARKS).split())
+    if plain == unit:
+        return unit
+    if len(plain) > 30 or not _UNIT.fullmatch(plain):
+        return None
+    without = plain.replace("°", "deg ").replace("deg  ", "deg ").strip()
+    spelling = _SPELLINGS.get(without.casefold(), plain)
+    try:
+        conversion(spelling, unit)
+    except UserError:
+        return None
+    return spelling
+
+
+def named_all(words: Sequence[str], unit: str) -> list[str | None]:
+    """Return the unit that each of many words names, None for none.
+
+    No column of units has more than some unusual words; further ones are not looked up. A column
+    of remarks would keep the library busy for hours.
+    """
+    found: list[str | None] = []
+    unusual = 0
+    for word in words:
+        plain = " ".join(word.translate(_MARKS).split()).replace("°", "deg ").strip()
+        usual = plain == unit or plain.casefold() in _SPELLINGS
+        unusual += not usual
+        found.append(named(word, unit) if usual or unusual <= _MOST_UNUSUAL else None)
+    return found
+
+
 def same_dimension(spelling: str, unit: str) -> bool:
     """Tell whether a spelling is a unit of the same quantity as another.
 
@@ -122,6 +190,8 @@ def same_dimension(spelling: str, unit: str) -> bool:
     """
     if spelling == unit:
         return True
+    if len(spelling) > 60 or re.search(r"\d{4}|(?:\*\*|\^).*(?:\*\*|\^).*(?:\*\*|\^)", spelling):
+        raise ValueError(f"{spelling} is not a unit")  # towers of powers never come to an end
     registry = _registry()
     try:
         source = registry.parse_units(_plain(spelling))

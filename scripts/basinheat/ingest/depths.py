@@ -8,6 +8,7 @@ import numpy as np
 import pandas as pd
 
 from basinheat import trajectory
+from basinheat.ingest.unreadable import drop_unit_unknown, refuse_unreadable
 from basinheat.ledger import Ledger
 from basinheat.readers import InputTable
 
@@ -94,8 +95,17 @@ def surveys_of(table: InputTable, ledger: Ledger) -> tuple[trajectory.Surveys, I
     ledger : Ledger
         Takes stations that cannot stand.
     """
-    frame = table.frame
-    low = ~(frame["depth"] >= 0.0).to_numpy()
+    for name in ("depth", "inclination"):
+        table = refuse_unreadable(table, ledger, name, bounds=name == "depth")
+    drop_unit_unknown(table, ledger, "azimuth")
+    ledger.drop(
+        table,
+        table.frame["wrong:azimuth"].to_numpy(bool),
+        "azimuth",
+        "azimuth_dropped",
+        '"{written}" in column "{header}" is not a number; the station is used without it.',
+    )
+    low = ~(table.frame["depth"] >= 0.0).to_numpy()
     table = ledger.refuse(
         table, low, "depth", "no_depth", "the station has no depth of 0 m or more; give one."
     )

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-import re
+import logging
 from collections.abc import Sequence
 from typing import get_args
 
@@ -13,18 +13,26 @@ from basinheat import duplicates, trajectory
 from basinheat.flags import mark
 from basinheat.ingest import depths
 from basinheat.ingest.decisions import Decisions
+from basinheat.ingest.identity import Identity, similar
+from basinheat.ingest.times import read_times
+from basinheat.ingest.unreadable import drop_unit_unknown, refuse_unreadable
 from basinheat.ledger import Ledger
 from basinheat.readers import InputTable
 from basinheat.readers.cells import dates
-from basinheat.screening.one_record import ESTIMATED
-from basinheat.settings.inputs import Kind, ReadingsFile
+from basinheat.screening.remarks import ESTIMATED
+from basinheat.settings.inputs import Inputs, Kind, ReadingsFile
+from basinheat.settings.wells import Screening
+
+_log = logging.getLogger(__name__)
 
 OPTIONAL = (
     "temperature_std",
     "since_circulation",
     "circulation",
+    "drilling",
     "hole_diameter",
     "mud_temperature",
+    "casing_shoe",
 )
 KINDS = get_args(Kind)
 DEEPEST_M = 15_000.0  # along the hole: 12,262 m at Kola, 15 km in extended reach (from memory)
@@ -36,7 +44,11 @@ _PLACE = (
 
 
 def clean_readings(
-    table: InputTable, ledger: Ledger, specs: Sequence[ReadingsFile], decisions: Decisions
+    table: InputTable,
+    ledger: Ledger,
+    inputs: Inputs,
+    decisions: Decisions,
+    rules: Screening,
 ) -> InputTable:
     """Return complete readings, one of each, with ``reading_id``.
 
@@ -46,17 +58,21 @@ def clean_readings(
         Readings as read.
     ledger : Ledger
         Takes refused and merged rows.
-    specs : sequence of ReadingsFile
-        Kinds and date formats of the files.
+    inputs : Inputs
+        Kinds and date formats of the files; headers of logs come after the files of readings.
     decisions : Decisions
         Reviewer's decisions.
+    rules : Screening
+        Thresholds of times.
     """
-    _name_kinds(table, specs)
-    _read_dates(table, specs)
+    _name_kinds(table, inputs.readings)
+    _read_dates(table, inputs.readings)
     table.frame["reading_id"] = duplicates.reading_ids(table.frame)
     decisions.set_values(table)
+    read_times(table, ledger, [*inputs.readings, *inputs.las], rules)
     decisions.regrade(table)
     decisions.mark_kept(table)
+    table = _complete(table, ledger)
     wrong_date = (table.frame["date"] == "?").to_numpy()
     ledger.drop(
         table,
@@ -66,6 +82,7 @@ def clean_readings(
         "the date is written in no form that is known; state date_format. Used without it.",
     )
     for name in OPTIONAL:
+        drop_unit_unknown(table, ledger, name)
         ledger.drop(
             table,
             table.frame[f"wrong:{name}"].to_numpy(),
@@ -73,13 +90,16 @@ def clean_readings(
             f"{name}_dropped",
             '"{written}" in column "{header}" is not a number; the reading is used without it.',
         )
-    table = _complete(table, ledger)
     table = duplicates.merged(table, ledger)
     return decisions.reject(table, ledger)
 
 
 def attribute(
-    table: InputTable, ledger: Ledger, wells: pd.DataFrame, refused: set[str]
+    table: InputTable,
+    ledger: Ledger,
+    wells: pd.DataFrame,
+    refused: set[str],
+    identity: Identity,
 ) -> InputTable:
     """Refuse rows of wells that are not known or were refused; ``row`` is that of the well."""
     names = table.frame["well"]
@@ -90,13 +110,35 @@ def attribute(
     table = ledger.refuse(
         table, of_refused, "well", "well_rejected", "the well was refused: see its own line."
     )
-    frame = table.frame
-    unknown = (frame["row"] < 0).to_numpy()
+    unknown = (table.frame["row"] < 0).to_numpy()
     if unknown.any():
-        frame["_near"] = _similar(frame["well"].where(unknown, ""), wells["well"])
+        table.frame["_near"] = _near(table, unknown, wells["well"].tolist(), identity)
     return ledger.refuse(
         table, unknown, "well", "unknown_well", "the wells hold no such name{_near}."
     )
+
+
+def _near(
+    table: InputTable, unknown: np.ndarray, wells: list[str], identity: Identity
+) -> np.ndarray:
+    """Return what a name that is not known may stand for, and say how many another rule joins."""
+    codes, unique = pd.factorize(table.frame["well"].where(unknown, ""))
+    names = unique.tolist()
+    near = similar(names, wells)
+    joined = int(
+        np.array([bool(name and well) for name, well in zip(names, near, strict=True)])[codes].sum()
+    )
+    if joined and identity.rule != "normalised":
+        _log.warning(
+            "%s: %d rows name no well, but would under `well_names: normalised`",
+            table.name,
+            joined,
+        )
+    texts = [
+        identity.torn(name) or (f'; there is "{well}" (see `well_names`)' if well else "")
+        for name, well in zip(names, near, strict=True)
+    ]
+    return np.array([*texts, ""], object)[codes]
 
 
 def place_readings(
@@ -129,7 +171,9 @@ def place_readings(
 
 
 def _complete(table: InputTable, ledger: Ledger) -> InputTable:
-    """Refuse readings without a depth, a temperature or a kind that is known."""
+    """Refuse readings without a well, a depth, a temperature or a kind that is known."""
+    nameless = (table.frame["well"] == "").to_numpy()
+    table = ledger.refuse(table, nameless, "well", "no_well", "the row names no well.")
     frame = table.frame
     estimated = frame["kind_word"].str.contains(ESTIMATED) & ~frame["kind"].isin(KINDS)
     estimated |= frame["as_written:temperature"].str.contains(ESTIMATED)
@@ -140,15 +184,9 @@ def _complete(table: InputTable, ledger: Ledger) -> InputTable:
         "estimated_value",
         "the temperature was estimated or calculated, not read.",
     )
+    drop_unit_unknown(table, ledger, "vertical_depth")
     for name in ("temperature", "depth", "vertical_depth"):
-        table = ledger.refuse(
-            table,
-            table.frame[f"wrong:{name}"].to_numpy(),
-            name,
-            "not_a_number",
-            '"{written}" in column "{header}" is not a number. A decimal comma or separators of '
-            "thousands are stated under `decimal` and `thousands`.",
-        )
+        table = refuse_unreadable(table, ledger, name, bounds=True)
     # A log that reads 0 in any unit was not read; an equilibrium log in frozen ground may be 0.
     frame = table.frame
     zero = frame["as_written:temperature"].str.fullmatch(r"[-+]?0*[.,]?0+") & (
@@ -160,24 +198,25 @@ def _complete(table: InputTable, ledger: Ledger) -> InputTable:
     )
     none = table.frame[["depth", "vertical_depth"]].isna().all(axis=1).to_numpy()
     table = ledger.refuse(table, none, "depth", "no_depth", "the row states no depth.")
-    deep = table.frame["vertical_depth"].fillna(table.frame["depth"]).to_numpy()
-    table = ledger.refuse(
-        table,
-        deep < 0.0,
-        "depth",
-        "depth_negative",
-        "depth is {depth:g} m, must be positive down. Check its sign or the unit of column "
-        '"{header}".',
-    )
-    deep = table.frame["vertical_depth"].fillna(table.frame["depth"]).to_numpy()
-    table = ledger.refuse(
-        table,
-        np.fmax(deep, table.frame["depth"].to_numpy()) > DEEPEST_M,
-        "depth",
-        "depth_impossible",
-        f"depth is {{depth:g}} m, deeper than any hole ({DEEPEST_M:g} m). Check the value and the "
-        'unit of column "{header}".',
-    )
+    for name in ("vertical_depth", "depth"):
+        # Where both are noted the vertical one counts, and a negative measured one does no harm.
+        counts = table.frame["vertical_depth"].isna() if name == "depth" else True
+        table = ledger.refuse(
+            table,
+            (counts & (table.frame[name] < 0.0)).to_numpy(),
+            name,
+            "depth_negative",
+            f"depth is {{{name}:g}} m, must be positive down. Check its sign or the unit of column "
+            '"{header}".',
+        )
+        table = ledger.refuse(
+            table,
+            (table.frame[name] > DEEPEST_M).to_numpy(),
+            name,
+            "depth_impossible",
+            f"depth is {{{name}:g}} m, deeper than any hole ({DEEPEST_M:g} m). Check the value and "
+            'the unit of column "{header}".',
+        )
     unknown = ~table.frame["kind"].isin(KINDS).to_numpy()
     return ledger.refuse(
         table,
@@ -217,17 +256,11 @@ def _read_dates(table: InputTable, specs: Sequence[ReadingsFile]) -> None:
     """Turn dates into ISO 8601; what is none becomes "?"."""
     frame = table.frame
     frame["as_written:date"] = frame["date"]
-    for number, spec in enumerate(specs):
-        rows = (frame["config"] == number) if "config" in frame else np.zeros(len(frame), bool)
-        found, wrong = dates(frame.loc[rows, "date"], spec.date_format)
+    # headers of logs come after the files of readings, and bring their dates in ISO 8601
+    formats = [(frame.get("config", -1) == n, spec.date_format) for n, spec in enumerate(specs)]
+    if "config" in frame:
+        formats.append((frame["config"] >= len(specs), None))
+    for rows, pattern in formats:
+        rows = np.zeros(len(frame), bool) | rows
+        found, wrong = dates(frame.loc[rows, "date"], pattern)
         frame.loc[rows, "date"] = found.mask(wrong, "?")
-
-
-def _similar(names: pd.Series, wells: pd.Series) -> pd.Series:
-    """Return where a well of a similar name is: letters and digits alike, case and marks not."""
-    simple = {re.sub(r"\W|_", "", name).casefold(): name for name in sorted(wells, reverse=True)}
-    texts = {}
-    for name in names.unique():
-        near = simple.get(re.sub(r"\W|_", "", name).casefold()) if name else None
-        texts[name] = f'; there is "{near}"' if near else ""
-    return names.map(texts)

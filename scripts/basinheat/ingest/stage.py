@@ -15,13 +15,21 @@ import numpy as np
 import pandas as pd
 
 from basinheat.flags import joined, mark
+from basinheat.ingest import las
 from basinheat.ingest.decisions import Decisions
+from basinheat.ingest.heat_flow import prepare_heat_flow
 from basinheat.ingest.layers import prepare_layers
 from basinheat.ingest.readings import attribute, clean_readings, place_readings
+from basinheat.ingest.tops import read_layers
 from basinheat.ingest.wells import prepare_wells
 from basinheat.ledger import Ledger
 from basinheat.readers import InputTable, read_inputs
-from basinheat.screening import screen_against_neighbours, screen_records, screen_wells
+from basinheat.screening import (
+    gather_findings,
+    screen_against_neighbours,
+    screen_records,
+    screen_wells,
+)
 from basinheat.settings.model import Settings
 from basinheat.tables import Readings, Wells
 
@@ -30,12 +38,15 @@ _log = logging.getLogger(__name__)
 
 @dataclass(frozen=True)
 class Prepared:
-    """What the inputs hold, cleaned: ``tables.Wells, Readings, Layers, Rejected``."""
+    """What the inputs hold, cleaned, and what was found: tables by the contracts of ``tables``."""
 
     wells: pd.DataFrame
     readings: pd.DataFrame
     layers: pd.DataFrame
+    heat_flow: pd.DataFrame
     rejected: pd.DataFrame
+    findings: pd.DataFrame
+    decisions_template: pd.DataFrame
 
 
 def prepare(settings: Settings, folder: str | Path) -> Prepared:
@@ -61,22 +72,29 @@ def prepare(settings: Settings, folder: str | Path) -> Prepared:
     decisions = Decisions.load(inputs.decisions, folder)
     tables = {
         name: read_inputs(name, getattr(inputs, name), folder)
-        for name in ("wells", "readings", "layers", "surveys")
+        for name in ("wells", "readings", "surveys", "heat_flow")
     }
+    tables["layers"] = read_layers(inputs.layers, folder)
+    not_las = las.append(tables, inputs, folder, ledger)
     rows_in = {name: len(table) + len(table.broken) for name, table in tables.items()}
+    rows_in["las"] = not_las
     for table in tables.values():
         ledger.broken(table)
-    wells, refused_wells = prepare_wells(tables["wells"], ledger, settings, folder, decisions)
-    readings = clean_readings(tables["readings"], ledger, inputs.readings, decisions)
-    readings = attribute(readings, ledger, wells, refused_wells)
-    layers = attribute(tables["layers"], ledger, wells, refused_wells)
-    stations = attribute(tables["surveys"], ledger, wells, refused_wells)
+    wells, *known = prepare_wells(tables["wells"], ledger, settings, folder, decisions)
+    identity = known[-1]
+    readings = identity.apply(tables["readings"])
+    readings = clean_readings(readings, ledger, inputs, decisions, settings.screening)
+    readings = attribute(readings, ledger, wells, *known)
+    layers = attribute(identity.apply(tables["layers"]), ledger, wells, *known)
+    stations = attribute(identity.apply(tables["surveys"]), ledger, wells, *known)
     readings, surveys, stations = place_readings(readings, stations, ledger, wells)
     rules = settings.screening
-    readings = screen_records(readings, ledger, rules, settings.correction.reading_std_k)
-    readings = screen_wells(readings, ledger, rules, settings.correction.same_depth_m)
+    std_k, near_m = settings.correction.reading_std_k, settings.correction.same_depth_m
+    readings, heaped = screen_records(readings, ledger, rules, std_k, settings.crs)
+    readings = screen_wells(readings, ledger, rules, std_k, near_m)
     readings = screen_against_neighbours(readings, ledger, rules)
     out_layers = prepare_layers(layers, ledger, wells, surveys)
+    points = prepare_heat_flow(tables["heat_flow"], ledger, settings, wells)
     mark(wells, ~np.isin(np.arange(len(wells)), readings.frame["row"]), "no_readings")
     decisions.audit(ledger)
     kept = {
@@ -84,11 +102,14 @@ def prepare(settings: Settings, folder: str | Path) -> Prepared:
         "readings": len(readings),
         "layers": len(out_layers),
         "surveys": len(stations),
+        "heat_flow": len(points),
+        "las": 0,
     }
     _check_counts(rows_in, kept, ledger)
     rejected = ledger.table()
     _log_codes(kept, rejected)
-    return Prepared(_wells(wells), _readings(readings), out_layers, rejected)
+    found = gather_findings(wells, readings.frame, rejected, ledger.expected(), heaped, rules)
+    return Prepared(_wells(wells), _readings(readings), out_layers, points, rejected, *found)
 
 
 def _check_counts(rows_in: dict[str, int], kept: dict[str, int], ledger: Ledger) -> None:
@@ -130,6 +151,7 @@ def _readings(table: InputTable) -> pd.DataFrame:
             "kind": frame["kind"],
             "since_circulation_h": frame["since_circulation"],
             "circulation_h": frame["circulation"],
+            "drilling_h": frame["drilling"],
             "hole_radius_m": frame["hole_diameter"] / 2.0,
             "mud_temperature_degc": frame["mud_temperature"],
             "log_run": frame["log_run"],

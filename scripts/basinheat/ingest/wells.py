@@ -2,27 +2,25 @@
 
 from __future__ import annotations
 
-import logging
 import os
-from collections.abc import Sequence
 from pathlib import Path
 
 import numpy as np
 import pandas as pd
 
-from basinheat import datums, projection, rasters, surface
-from basinheat.duplicates import one_row_a_well
+from basinheat import datums, rasters, surface
 from basinheat.flags import mark
+from basinheat.ingest.conflicts import HEADER, one_row_a_well
 from basinheat.ingest.decisions import Decisions
+from basinheat.ingest.identity import Identity, identity_of, joined_wells
+from basinheat.ingest.places import placed, with_crs, without_owner, without_place
+from basinheat.ingest.unreadable import drop_unit_unknown, refuse_unreadable
 from basinheat.ledger import Ledger
 from basinheat.readers import InputTable
 from basinheat.screening import screen_locations
-from basinheat.settings.inputs import WellsFile
 from basinheat.settings.model import Settings
 from basinheat.settings.wells import ColumnSurface
 from basinheat.tables import Wells
-
-_log = logging.getLogger(__name__)
 
 # Highest and deepest ground on Earth, with room for rig floors.
 LOWEST_M, HIGHEST_M = -11_500.0, 9_000.0
@@ -36,8 +34,8 @@ OPTIONAL = {
 
 def prepare_wells(
     table: InputTable, ledger: Ledger, settings: Settings, folder: str | Path, decisions: Decisions
-) -> tuple[pd.DataFrame, set[str]]:
-    """Return the wells that can be mapped, and the names of those that were refused.
+) -> tuple[pd.DataFrame, set[str], Identity]:
+    """Return the wells that can be mapped, those that were refused, and how names are joined.
 
     Parameters
     ----------
@@ -58,11 +56,20 @@ def prepare_wells(
         Columns of ``tables.Wells`` without flags, ``flag:<code>``, ``height_m, height_std_m`` of
         the datum above ground or sea floor, ``screening_degc`` (surface temperature).
     refused : set of str
+        Final names.
+    identity : Identity
     """
-    names = set(table.frame["well"])
+    rule, distance_m = settings.inputs.well_names, settings.screening.same_well_distance_m
+    spellings = table.frame["well"].drop_duplicates().tolist()
+    if HEADER not in table.frame:
+        table.frame[HEADER] = False
     decisions.set_values(table)
     table = _complete(table, ledger)
-    table = _placed(table, settings.inputs.wells, settings.crs)
+    table = with_crs(table, ledger, settings.inputs.wells, settings.crs)
+    table = without_place(table, ledger, rule)
+    table = placed(table, settings.crs)
+    table = without_owner(joined_wells(table, rule, distance_m), ledger)
+    identity = identity_of(table, rule, spellings)
     decisions.mark_kept(table)
     table = decisions.reject(table, ledger)
     elevation = settings.inputs.rasters.elevation
@@ -73,32 +80,22 @@ def prepare_wells(
         dem = rasters.sample(os.path.join(folder, elevation), settings.crs, *places)
         table.frame["_dem"] = dem
     table = screen_locations(table, ledger, settings.screening, settings.crs, dem)
-    table = one_row_a_well(table, ledger, settings.screening.same_well_distance_m)
+    table = one_row_a_well(table, ledger, distance_m)
     ordered = table.frame.sort_values("well", kind="stable").reset_index(drop=True)
     table = table.with_frame(ordered)
     table, surface_degc = _with_surface(table, ledger, settings, folder)
     wells = _finished(table)
     wells["screening_degc"] = surface_degc
-    return wells, names.difference(wells["well"])
+    return wells, set(identity.names.values()).difference(wells["well"]), identity
 
 
 def _complete(table: InputTable, ledger: Ledger) -> InputTable:
-    """Refuse rows without a name or place; drop other cells that are no numbers or can't be."""
+    """Refuse rows without a name; drop other cells that are no numbers or can't be."""
     nameless = (table.frame["well"] == "").to_numpy()
     table = ledger.refuse(table, nameless, "well", "no_well", "the row names no well.")
+    drop_unit_unknown(table, ledger, "water_depth")
     for name in ("x", "y", "water_depth"):
-        wrong = table.frame[f"wrong:{name}"].to_numpy()
-        table = ledger.refuse(
-            table, wrong, name, "not_a_number", '"{written}" in column "{header}" is not a number.'
-        )
-    for name in ("x", "y"):
-        table = ledger.refuse(
-            table,
-            table.frame[name].isna().to_numpy(),
-            name,
-            "no_coordinates",
-            'column "{header}" is blank: the well has no place on the map.',
-        )
+        table = refuse_unreadable(table, ledger, name)
     table = ledger.refuse(
         table,
         (table.frame["water_depth"] < 0.0).to_numpy(),
@@ -107,40 +104,16 @@ def _complete(table: InputTable, ledger: Ledger) -> InputTable:
         "water depth is {water_depth:g} m; write it positive, and 0 or blank onshore.",
     )
     for name, (lowest, highest) in OPTIONAL.items():
+        drop_unit_unknown(table, ledger, name)
         values = table.frame[name]
         ledger.drop(
             table,
             (table.frame[f"wrong:{name}"] | (values < lowest) | (values > highest)).to_numpy(),
             name,
             f"{name}_dropped",
-            '"{written}" in column "{header}" can not be; the well is used without it.',
+            f'"{{written}}" in column "{{header}}" must be a number from {lowest:g} to {highest:g} '
+            "in the unit of the tables; the well is used without it.",
         )
-    return table
-
-
-def _placed(table: InputTable, specs: Sequence[WellsFile], map_crs: str) -> InputTable:
-    """Add place on the map and on the globe."""
-    frame = table.frame
-    columns = ("easting_m", "northing_m", "longitude_deg", "latitude_deg")
-    for name in columns:
-        frame[name] = np.nan
-    frame["crs"] = map_crs
-    ballpark = np.zeros(len(frame), bool)
-    for number, spec in enumerate(specs):
-        rows = (frame["config"] == number).to_numpy() if "config" in frame else ballpark
-        if not rows.any():
-            continue
-        crs = spec.crs or map_crs
-        frame.loc[rows, "crs"] = crs
-        x, y = (frame.loc[rows, name].to_numpy(float) for name in ("x", "y"))
-        there = projection.project(x, y, crs, map_crs)
-        globe = projection.project(x, y, crs, projection.WGS84)
-        for name, values in zip(columns, (there.x, there.y, globe.x, globe.y), strict=True):
-            frame.loc[rows, name] = values
-        ballpark[rows] = there.ballpark
-        for operation, points in sorted(there.operations.items()):
-            _log.info("%s to %s: %s: %d wells", crs, map_crs, operation, points)
-    mark(frame, ballpark, "ballpark_datum_shift")
     return table
 
 

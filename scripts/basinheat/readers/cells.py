@@ -1,69 +1,71 @@
-"""Text cells to numbers, words and dates; what is blank and what is wrong."""
+"""Text cells to words and dates; what is blank."""
 
 from __future__ import annotations
+
+from collections.abc import Iterable
 
 import numpy as np
 import pandas as pd
 
-# Words that stand for nothing in tables of any origin, and the null of LAS files.
-BLANK = frozenset({"", "na", "n/a", "#n/a", "nan", "null", "none", "-", "--", "-999.25"})
+from basinheat.readers.encoding import NUL
+
+# Words that stand for nothing in tables of any origin, in any case.
+BLANK = frozenset(
+    {
+        *("", "na", "n/a", "#n/a", "nan", "null", "none", "-", "--", "?"),
+        *("nil", "nil:missing", "nil:unknown", "nil:inapplicable"),
+        *("unspecified", "[unspecified]", "unknown"),
+    }
+)
 
 
-def words(cells: pd.Series, missing: list[str]) -> pd.Series:
+def words(cells: pd.Series, missing: Iterable[str]) -> pd.Series:
     """Return the cells stripped, "" where they are blank or a missing-value word.
 
     Examples
     --------
-    >>> words(pd.Series([" BW-1 ", "n/a", "?"]), ["?"]).tolist()
+    >>> words(pd.Series([" BW-1 ", "n/a", "x.x"]), ["x.x"]).tolist()
     ['BW-1', '', '']
     """
+    out = stripped(cells)
+    return out.mask(is_missing(out, missing), "")
+
+
+def stripped(cells: pd.Series) -> pd.Series:
+    """Return words without blanks around them, nor NULs that pad fixed fields."""
     out = cells.str.strip()
-    blank = BLANK.union(word.strip().lower() for word in missing)
-    return out.mask(out.str.lower().isin(blank), "")
+    padded = out.str.contains(NUL, regex=False).to_numpy(bool)
+    return out.mask(padded, out.str.strip(NUL).str.strip()) if padded.any() else out
 
 
-def numbers(
-    cells: pd.Series, missing: list[str], decimal: str = ".", thousands: str = ""
-) -> tuple[np.ndarray, np.ndarray]:
-    """Return the numbers of text cells, NaN where blank, and which cells are no numbers.
-
-    A missing-value word that is a number stands for all its spellings: "0" also for "0.00".
+def is_missing(text: pd.Series, missing: Iterable[str]) -> np.ndarray:
+    """Tell which cells are blank or a missing-value word.
 
     Parameters
     ----------
-    cells : Series of text, (n,)
-        As written.
-    missing : list of str
-        Words that mean missing, beside the blank.
-    decimal, thousands : str
-        Marks inside numbers; a comma is never guessed to be one or the other.
-
-    Returns
-    -------
-    values : ndarray, (n,)
-        Numbers.
-    wrong : ndarray of bool, (n,)
-        Cells that are neither blank nor a number.
-
-    Examples
-    --------
-    >>> values, wrong = numbers(pd.Series(["12,5", "x", ""]), [], decimal=",")
-    >>> float(values[0]), wrong.tolist()
-    (12.5, [False, True, False])
+    text : Series of text, (n,)
+        Without blanks around.
+    missing : iterable of str
+        Words that mean missing, beside those that always do.
     """
-    text = words(cells, missing)
-    values = pd.to_numeric(_plain(text, decimal, thousands), errors="coerce").to_numpy(float)
-    wrong = ~np.isfinite(values) & (text != "").to_numpy(bool)
-    nulls = [float(word) for word in (*missing, "-999.25") if _is_number(word)]
-    values = np.where(np.isin(values, nulls), np.nan, values)
-    return np.where(np.isfinite(values), values, np.nan), wrong
+    blank = BLANK.union(word.strip().lower() for word in missing)
+    return text.str.lower().isin(blank).to_numpy(bool)
+
+
+def counted(text: pd.Series, mask: np.ndarray) -> dict[str, int]:
+    """Return how often each word stands in the cells of a mask, blanks left out."""
+    if not mask.any():
+        return {}
+    counts = text[mask].value_counts()
+    return {str(word): int(count) for word, count in sorted(counts.items()) if word}
 
 
 def dates(text: pd.Series, pattern: str | None) -> tuple[pd.Series, np.ndarray]:
     """Return dates as ISO 8601, "" where blank, and which are no dates.
 
     Without a pattern ISO 8601 is read (a year or a month alone too) and day.month.year; never
-    month and day around a slash, which nobody can tell apart.
+    month and day around a slash, which nobody can tell apart. With a pattern, what does not fit it
+    is read where it is a whole ISO date: so are the dates of workbooks.
 
     Parameters
     ----------
@@ -77,34 +79,40 @@ def dates(text: pd.Series, pattern: str | None) -> tuple[pd.Series, np.ndarray]:
     >>> dates(pd.Series(["1984", "04.06.1989", "6/4/89"]), None)[0].tolist()
     ['1984', '1989-06-04', '']
     """
-    out = text.copy()
-    if pattern is None:
-        iso = text.str.fullmatch(r"[12]\d{3}(-[01]\d(-[0-3]\d([T ][0-2]\d:[0-5]\d(:[0-5]\d)?)?)?)?")
-        out = out.mask(~iso.astype(bool), "")
-        pattern, left = "%d.%m.%Y", (text != "") & ~iso.astype(bool)
-    else:
-        left = text != ""
+    clock = r"([T ][0-2]\d:[0-5]\d(:[0-5]\d)?)?"
+    part = rf"(-[01]\d(-[0-3]\d{clock})?)?" if pattern is None else rf"-[01]\d-[0-3]\d{clock}"
+    iso = text.str.fullmatch(rf"[12]\d{{3}}{part}").astype(bool)
+    out = text.mask(~iso, "")
+    left = (text != "") & ~iso if pattern is None else text != ""
     if left.any():
-        found = pd.to_datetime(text[left], format=pattern, errors="coerce")
-        out[left] = found.dt.strftime("%Y-%m-%d").fillna("")
+        found = pd.to_datetime(text[left], format=pattern or "%d.%m.%Y", errors="coerce")
+        found = found.dt.strftime("%Y-%m-%d")
+        out[left] = found.where(found.notna(), out[left])
     return out, ((out == "") & (text != "")).to_numpy(bool)
 
 
-def _plain(text: pd.Series, decimal: str, thousands: str) -> pd.Series:
-    """Return numbers as Python writes them."""
-    text = text.str.replace("\u2212", "-", regex=False)
-    if thousands:
-        # Groups of three only: "1,5" is then no number and not fifteen.
-        mark = "\\" + thousands
-        grouped = text.str.fullmatch(rf"[-+]?\d{{1,3}}({mark}\d{{3}})+(\{decimal}\d*)?")
-        text = text.where(~grouped.astype(bool), text.str.replace(thousands, "", regex=False))
-    if decimal == ",":
-        text = text.str.replace(".", "x", regex=False).str.replace(",", ".", regex=False)
-    return text
+def from_serials(text: pd.Series, day_0: str) -> pd.Series:
+    """Return dates that stand there as numbers of days as ISO 8601, other cells as they are.
 
+    Four digits are a year and no serial.
 
-def _is_number(word: str) -> bool:
-    try:
-        return bool(np.isfinite(float(word)))
-    except ValueError:
-        return False
+    Parameters
+    ----------
+    text : Series of text, (n,)
+        Stripped.
+    day_0 : str
+        Day 0 of the numbers, ISO 8601.
+
+    Examples
+    --------
+    >>> from_serials(pd.Series(["31113", "1984"]), "1899-12-30").tolist()
+    ['1985-03-07', '1984']
+    """
+    serial = text.str.fullmatch(r"[1-7]\d{4}([.,]\d+)?").to_numpy(bool)
+    if not serial.any():
+        return text
+    days = text[serial].str.extract(r"^(\d+)")[0].astype(np.int64)
+    found = pd.Timestamp(day_0) + pd.to_timedelta(days, unit="D")
+    out = text.copy()
+    out[serial] = found.dt.strftime("%Y-%m-%d").to_numpy()
+    return out

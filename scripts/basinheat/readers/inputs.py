@@ -4,37 +4,22 @@ from __future__ import annotations
 
 import logging
 import os
-from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, replace
+from collections.abc import Sequence
+from dataclasses import dataclass, field, replace
 from pathlib import Path
 
 import numpy as np
 import pandas as pd
 
-from basinheat import units
 from basinheat.errors import UserError
-from basinheat.readers.cells import numbers, words
-from basinheat.readers.raw import RawTable, headers, read_raw
-from basinheat.settings.columns import INPUT_COLUMNS, InputColumn
+from basinheat.readers.canonical import Note, Reading, canonical, filled
+from basinheat.readers.header import clean, fault_of
+from basinheat.readers.raw import Head, RawTable, look, read_raw
+from basinheat.settings import schemas
 from basinheat.settings.files import matches
-from basinheat.settings.inputs import TableFile
+from basinheat.settings.inputs import PlacesFile, TableFile
 
 _log = logging.getLogger(__name__)
-
-# Where a zero can't be meant, it stands for missing (common practice in well tables).
-ZERO_IS_MISSING = {
-    "wells": {"total_depth"},
-    "readings": {
-        "depth",
-        "vertical_depth",
-        "temperature_std",
-        "since_circulation",
-        "circulation",
-        "hole_diameter",
-    },
-    "layers": {"conductivity", "conductivity_std"},
-    "surveys": frozenset(),
-}
 
 
 @dataclass(frozen=True)
@@ -44,21 +29,30 @@ class InputTable:
     Parameters
     ----------
     name : str
-        wells, readings, layers or surveys.
+        wells, readings, layers, surveys or heat_flow.
     frame : DataFrame, (n,)
         A column per canonical name: numbers in canonical units or text; ``as_written:<name>`` and
         ``wrong:<name>`` beside each number; ``source_file, source_line, spec``; ``unit:depth`` and
-        ``unit:temperature`` as the config states them.
+        ``unit:temperature``, the unit each was read in. Only where there is something to tell:
+        ``bound:<name>`` (the cell states a bound; it is wrong too), ``unit_unknown:<name>`` and
+        ``row_unit:<name>`` (the row's unit is none; its word; it is wrong too), ``crs_word`` (the
+        CRS that the row, its file or its standard names, "" for the config's), and the flags
+        ``flag:unit_in_cell``, ``flag:approximate``.
     headers : list of dict
         Per ``spec`` of a row: canonical name to header in the file.
     broken : DataFrame
         Records that could not be split into cells: source_file, source_line, well, code, sentence.
+    notes : list of dict
+        What was found in the files: file, what, column ("" for the file as a whole), value, count.
+        ``what`` is rows, broken, encoding, delimiter, header_line, sheet, layer, crs, missing,
+        unit_in_cell or row_unit.
     """
 
     name: str
     frame: pd.DataFrame
     headers: list[dict[str, str]]
     broken: pd.DataFrame
+    notes: list[Note] = field(default_factory=list)
 
     def __len__(self) -> int:
         """Return the number of rows."""
@@ -94,32 +88,35 @@ def read_inputs(name: str, specs: Sequence[TableFile], folder: str | Path) -> In
     UserError
         With a line per file that is absent, column that is not there, unit that is no unit.
     """
-    contract = INPUT_COLUMNS[name]
     parts, broken, mapped, faults = [], [], [], []
+    notes: list[Note] = []
     for number, spec in enumerate(specs):
         files = matches(spec.file, folder)
         if not files:
             faults.append(f"inputs.{name}[{number}].file: no file {spec.file}.")
         for path in files:
             try:
-                columns = _columns(path, spec, contract)
-                raw = read_raw(path, spec, columns.values())
-                frame = _canonical(raw, columns, spec, name)
+                how = _reading(path, spec, name)
+                raw = read_raw(path, spec, how.headers())
+                frame, found = canonical(raw, how, spec, name)
             except UserError as error:
                 faults += error.faults
                 continue
             label = source_name(path, folder)
             frame["source_file"], frame["spec"], frame["config"] = label, len(mapped), number
             parts.append(frame)
-            mapped.append(columns)
+            mapped.append(how.columns)
             broken += [(label, *fault) for fault in raw.broken]
+            notes += _of_file(label, raw, found)
     if faults:
         raise UserError(faults)
     nothing = RawTable(pd.DataFrame(), np.empty(0, np.int64))
-    empty = _canonical(nothing, {}, TableFile(file=""), name)
+    empty, _ = canonical(nothing, Reading(), TableFile(file=""), name)
     frame = pd.concat(parts, ignore_index=True) if parts else empty.assign(source_file="", spec=0)
     fields = ["source_file", "source_line", "well", "code", "sentence"]
-    return InputTable(name, frame, mapped, pd.DataFrame(broken, columns=fields))
+    return InputTable(
+        name, filled(frame), mapped, pd.DataFrame(broken, columns=fields), _once(notes)
+    )
 
 
 def source_name(path: str | Path, folder: str | Path) -> str:
@@ -133,45 +130,58 @@ def source_name(path: str | Path, folder: str | Path) -> str:
     return os.path.basename(path)
 
 
-def _columns(path: str, spec: TableFile, contract: Mapping[str, InputColumn]) -> dict[str, str]:
-    """Return canonical name to header for what is read of a file."""
-    present = headers(path, spec)
-    if spec.columns:
-        passed = [header for header in present if header and header not in spec.columns.values()]
-        if passed:
-            _log.info("%s: columns not read: %s", os.path.basename(path), ", ".join(passed))
-        return dict(spec.columns)
-    columns = {name: name for name in contract if name in present}
-    absent = [n for n, column in contract.items() if column.required and n not in columns]
-    if absent:
-        raise UserError(f"{path}: there is no column {', '.join(absent)}. Map it under `columns`.")
-    return columns
+def no_crs(path: str | Path, spec: TableFile, head: Head) -> str:
+    """Return the fault of points whose CRS nobody states, "" for none."""
+    stated = head.crs or getattr(spec, "crs", None) or getattr(spec, "crs_column", None)
+    if stated or not schemas.is_places(path) or not isinstance(spec, PlacesFile):
+        return ""
+    return f"{path}: the file names no CRS; state crs."
 
 
-def _canonical(raw: RawTable, columns: dict[str, str], spec: TableFile, table: str) -> pd.DataFrame:
-    """Return the cells as canonical columns; those that are not read are blank."""
-    contract, rows = INPUT_COLUMNS[table], len(raw.lines)
-    out: dict[str, object] = {}
-    for name, column in contract.items():
-        if column.text:
-            out[name] = (
-                words(raw.cells[columns[name]], spec.missing)
-                if name in columns
-                else pd.Series([""] * rows, dtype="str")
-            )
-            continue
-        unit = spec.units.get(name, column.unit)
-        out[name], out[f"wrong:{name}"] = np.full(rows, np.nan), np.zeros(rows, bool)
-        out[f"as_written:{name}"] = pd.Series([""] * rows, dtype="str")
-        if name in columns:
-            cells = raw.cells[columns[name]]
-            values, out[f"wrong:{name}"] = numbers(
-                cells, spec.missing, spec.decimal, spec.thousands
-            )
-            if name in ZERO_IS_MISSING[table]:
-                values = np.where(values == 0.0, np.nan, values)
-            scale, offset = units.conversion(unit, column.unit)
-            out[name], out[f"as_written:{name}"] = values * scale + offset, cells.str.strip()
-        if name in ("depth", "temperature"):
-            out[f"unit:{name}"] = pd.Series([unit] * rows, dtype="str")
-    return pd.DataFrame(out).assign(source_line=raw.lines)
+def _reading(path: str, spec: TableFile, table: str) -> Reading:
+    """Return how a file is read; everything that is named must be there."""
+    places = schemas.is_places(path)
+    needed = schemas.all_needed(spec, table, places)
+    head = look(path, spec, needed)
+    present = head.headers
+    columns = schemas.found(spec, table, present, places)
+    faults = [fault_of(header, present, path) for header in [*needed, *columns.values()]]
+    faults = [fault for fault in dict.fromkeys([*faults, no_crs(path, spec, head)]) if fault]
+    if faults:
+        raise UserError(faults)
+    default, column = schemas.crs_of(spec, table, present)
+    how = Reading(
+        _clean(columns),
+        schemas.units_of(spec, table),
+        _clean(schemas.unit_columns(spec, table, present)),
+        [*spec.missing, *schemas.column_list(spec, table).missing],
+        head.crs if head.crs and not getattr(spec, "crs", None) else default,
+        clean(column),
+    )
+    passed = [header for header in present if header and header not in how.headers()]
+    if passed:
+        _log.info("%s: columns not read: %s", os.path.basename(path), ", ".join(passed))
+    return how
+
+
+def _clean(headers: dict[str, str]) -> dict[str, str]:
+    """Return headers as the files are compared by them: two spellings of one are one."""
+    return {name: clean(header) for name, header in headers.items()}
+
+
+def _of_file(label: str, raw: RawTable, found: list[Note]) -> list[Note]:
+    """Return the notes on one file, and log what is not plain."""
+    whole = [("rows", "", len(raw.lines)), ("broken", "", len(raw.broken))]
+    whole += [(what, value, len(raw.lines)) for what, value in raw.notes]
+    for note in found:
+        place = (label, note["column"], note["what"], note["value"], note["count"])
+        _log.info('%s: %s: %s: "%s" in %s rows', *place)
+    return [
+        {"file": label, "what": what, "column": "", "value": value, "count": count}
+        for what, value, count in whole
+    ] + [{"file": label, **note} for note in found]
+
+
+def _once(notes: list[Note]) -> list[Note]:
+    """Return the notes, those of a file that is read several times once."""
+    return list({tuple(note.items()): note for note in notes}.values())

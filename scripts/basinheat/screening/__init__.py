@@ -6,12 +6,14 @@ impossible, or explained by a slip that its sentence names. A reviewer's decisio
 every rule here. Rules and thresholds without another source are common practice (METHODS K).
 """
 
+from basinheat.screening.findings import gather_findings
 from basinheat.screening.locations import screen_locations
 from basinheat.screening.neighbours import screen_against_neighbours
 from basinheat.screening.one_record import screen_records
 from basinheat.screening.one_well import screen_wells
 
 __all__ = [
+    "gather_findings",
     "screen_against_neighbours",
     "screen_locations",
     "screen_records",

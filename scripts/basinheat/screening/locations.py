@@ -20,6 +20,9 @@ CORE_WIDTHS = 5.0  # core: within this many median distances of the middle
 ABSURD_WIDTHS = 3.0  # further from the core than this many of its diagonals
 OUTSIDE_WIDTHS = 0.5
 OWN_SHARE = 0.25  # a group apart lies together within this share of its way to the others
+# Fewer wells do not tell how far apart wells usually lie; and how unusual a distance must be, in
+# robust standard deviations of its logarithm (common practice, no source).
+ENOUGH_WELLS, UNUSUAL = 20, 5.0
 # What happens to coordinates on their way into tables (common practice).
 SLIPS = {
     "x and y exchanged": lambda x, y: (y, x),
@@ -37,7 +40,9 @@ def screen_locations(
 
     A well is refused where its coordinates name no place, are both zero, lie alone and several
     widths of the others away from them, or lie outside the others while a common slip (exchanged
-    x and y, a lost sign) would put it among them. The slip is named, never mended.
+    x and y, a lost sign) would put it among them. The slip is named, never mended. It is doubted
+    where it lies outside the others, further from them than they usually lie apart: that takes
+    twenty wells to tell.
 
     Parameters
     ----------
@@ -101,8 +106,9 @@ def _slips(frame: pd.DataFrame, map_crs: str) -> tuple[NDArray[np.object_], NDAr
     off = _distance(place, place[core], 1)
     alone = _distance(place, place[np.isfinite(place).all(axis=1)], COMPANY + 1)
     # A group far away is another basin; a single well there is a slip or a typing error.
-    far[alone > np.maximum(OUTSIDE_WIDTHS * width, OWN_SHARE * off)] = "outside"
-    far[(off > ABSURD_WIDTHS * width) & (far == "outside")] = "absurd"
+    outside = alone > np.maximum(OUTSIDE_WIDTHS * width, OWN_SHARE * off)
+    far[outside & _unusual(alone)] = "outside"
+    far[outside & (off > ABSURD_WIDTHS * width)] = "absurd"
     odd = np.flatnonzero((off > OUTSIDE_WIDTHS * width) | ~np.isfinite(off))
     for crs, rows in frame.iloc[odd].groupby("crs", sort=True).indices.items():
         index = odd[rows]
@@ -110,6 +116,19 @@ def _slips(frame: pd.DataFrame, map_crs: str) -> tuple[NDArray[np.object_], NDAr
         found = _explained(x, y, str(crs), map_crs, place[core], width)
         slip[index] = [f"; with {name} it lies among them" if name else "" for name in found]
     return slip, far
+
+
+def _unusual(distance: Array) -> NDArray[np.bool_]:
+    """Tell which distances are far above the usual ones; none where there are few."""
+    known = distance > 0.0
+    if known.sum() < ENOUGH_WELLS:
+        return np.zeros(distance.size, bool)
+    size = np.full(distance.size, -np.inf)
+    size[known] = np.log(distance[known])
+    middle = np.median(size[known])
+    # Of a normal distribution: the standard deviation from the median distance (textbook).
+    spread = 1.4826 * np.median(np.abs(size[known] - middle))
+    return np.asarray(size > middle + UNUSUAL * spread)
 
 
 def _core(place: Array) -> tuple[NDArray[np.bool_], float]:

@@ -52,11 +52,10 @@ class Expected:
 def screen_against_neighbours(table: InputTable, ledger: Ledger, rules: Screening) -> InputTable:
     """Refuse readings that only a slip of unit explains; flag outliers among the neighbours.
 
-    A gradient below ``gradient_low_k_km``, or a low one that the neighbours contradict, is refused
-    where it is an ordinary one in the other unit. On the hot side the slip must explain the
-    reading, the neighbours must contradict it, and neither the total depth nor other depths of the
-    same well may speak for it; otherwise it is flagged and stays. Outliers are flagged, never
-    refused. In a basin colder than ``gradient_low_k_km``, lower that setting.
+    A reading is refused where it is an ordinary one in the other unit, the neighbours contradict
+    it as it stands and not in the other unit, and neither the total depth nor other depths of the
+    same well speak for it; otherwise it is flagged and stays. A unit is proposed, never put in.
+    Outliers are flagged, never refused.
 
     Parameters
     ----------
@@ -70,27 +69,39 @@ def screen_against_neighbours(table: InputTable, ledger: Ledger, rules: Screenin
     if not len(table):
         return table
     around = expected(table.frame, rules.neighbours)
+    _note_expected(table.frame, around)
+    own_well = _own_well_agrees(table.frame)
+    before = len(table)
     for suspected in (_temperature_unit, _depth_unit):
         column, other, mended = suspected(table.frame)
-        refuse, doubt = _suspect(table.frame, column, mended, around, rules)
-        code = f"{column}_unit_suspect"
-        mark(table.frame, doubt, code)
-        table.frame["_other"] = other
-        table.frame["_gradient"] = gradient_k_km(table.frame)
-        table.frame["_mended"] = mended
+        refuse, doubt = _suspect(table.frame, column, mended, around, own_well, rules)
+        mark(table.frame, doubt, f"{column}_unit_suspect")
+        table.frame[f"_{column}"], table.frame[f"_{column}_unit"] = refuse, other
+        table.frame[f"_{column}_mended"] = mended
+    for column in ("temperature", "depth"):
         sentence = (
-            "{temperature:.1f} degC at {depth_m:.0f} m is {_gradient:.1f} K/km from the surface; "
-            'with column "{header}" in {_other} it would be {_mended:.0f} K/km. Mend the unit or '
-            "the value; to use it as it is, add to the decisions: reading {reading_id}, keep."
+            "{temperature:.1f} degC at {depth_m:.0f} m is {gradient_k_km:.1f} K/km from the "
+            f'surface; with column "{{header}}" in {{_{column}_unit}} it would be '
+            f"{{_{column}_mended:.0f}} K/km. Mend the unit or the value; to use it as it is, add "
+            "to the decisions: reading {reading_id}, keep."
         )
-        before = len(table)
-        table = ledger.screen(table, refuse, column, code, sentence)
-        table = table.with_frame(table.frame.drop(columns=["_other", "_gradient", "_mended"]))
-        if len(table) < before:
-            around = expected(table.frame, rules.neighbours)
-    score = around.score(gradient_k_km(table.frame))
-    mark(table.frame, np.abs(score) > rules.outlier_score, "spatial_outlier")
+        refuse = table.frame.pop(f"_{column}").to_numpy(bool)
+        table = ledger.screen(table, refuse, column, f"{column}_unit_suspect", sentence)
+        del table.frame[f"_{column}_unit"], table.frame[f"_{column}_mended"]
+    if len(table) < before:
+        around = expected(table.frame, rules.neighbours)
+    _note_expected(table.frame, around)
+    off = np.abs(table.frame["score"].to_numpy(float)) > rules.outlier_score
+    mark(table.frame, off, "spatial_outlier")
     return table
+
+
+def _note_expected(frame: pd.DataFrame, around: Expected) -> None:
+    """Give readings the gradient they show, the temperature expected of them, and the score."""
+    frame["gradient_k_km"] = gradient_k_km(frame)
+    rise = around.gradient_k_km * frame["depth_m"].to_numpy(float) / 1000.0
+    frame["expected_degc"] = frame["surface_temperature_degc"].to_numpy(float) + rise
+    frame["score"] = around.score(frame["gradient_k_km"].to_numpy(float))
 
 
 def expected(frame: pd.DataFrame, neighbours: int) -> Expected:
@@ -130,8 +141,10 @@ def expected(frame: pd.DataFrame, neighbours: int) -> Expected:
     # A well on the very spot of another may not find itself: then the last neighbour goes.
     own[~own.any(axis=1), -1] = True
     around = values[nearest[~own].reshape(len(names), count)]
-    middle = np.nanmedian(around, axis=1)
-    mad = np.nanmedian(np.abs(around - middle[:, None]), axis=1)
+    # The median that looks for gaps takes ten times as long.
+    median = np.nanmedian if np.isnan(values).any() else np.median
+    middle = median(around, axis=1)
+    mad = median(np.abs(around - middle[:, None]), axis=1)
     overall = np.nanmedian(np.abs(values - np.nanmedian(values)))
     floor = max(0.5 * MAD_TO_STD * overall, SMALLEST_SCALE_K_KM)
     scale = np.hypot(np.maximum(MAD_TO_STD * mad, floor)[code], 1000.0 * SCATTER_K / depth)
@@ -176,33 +189,39 @@ def _depth_unit(frame: pd.DataFrame) -> tuple[str, Array, Array]:
 
 
 def _suspect(
-    frame: pd.DataFrame, column: str, mended: Array, around: Expected, rules: Screening
+    frame: pd.DataFrame,
+    column: str,
+    mended: Array,
+    around: Expected,
+    own_well: tuple[Flags, Flags],
+    rules: Screening,
 ) -> tuple[Flags, Flags]:
     """Return which readings a slip of unit makes unusable, and which it makes doubtful."""
-    gradient, depth = gradient_k_km(frame), frame["depth_m"].to_numpy(float)
+    gradient, depth = (frame[name].to_numpy(float) for name in ("gradient_k_km", "depth_m"))
     lowest, highest = ORDINARY_K_KM
     explained = (mended >= lowest) & (mended <= highest)
     short = (lowest - gradient) * depth / 1000.0 > IMPLAUSIBLE_K
-    cold = gradient < rules.gradient_low_k_km
+    score, limit = around.score(gradient), rules.outlier_score
+    agrees = np.abs(around.score(mended)) <= limit
+    # Mud cools shallow rock below 10 K/km: without the neighbours' word that is a doubt only.
+    cold = (gradient < lowest) & short & explained
     hot = gradient > rules.gradient_high_k_km
-    alone = ~_backed_by_own_well(frame, gradient)
+    colder, hotter = own_well
+    alone = ~hotter
     if column == "temperature":
         warm = frame["temperature"].to_numpy(float) > rules.unit_suspect_degc
         hot |= warm & (depth < SHALLOW_M)
     else:
         as_given, in_other = _total_depth(frame)
         alone = (alone | in_other) & ~as_given
-    score, limit = around.score(gradient), rules.outlier_score
-    agrees = np.abs(around.score(mended)) <= limit
-    cold |= (gradient < lowest) & (score < -limit) & agrees
-    cold &= short & explained
     hot &= explained & (mended < gradient)
     likely = hot
     if column == "depth":
         # With a total depth that only the other unit reaches, an ordinary excess is enough.
         likely = hot | (explained & in_other & (gradient > highest))
-    refuse = cold | (likely & (score > limit) & agrees & alone)
-    return refuse, hot & ~refuse
+    refuse = (cold & (score < -limit) & ~colder) | (likely & (score > limit) & alone)
+    refuse &= agrees
+    return refuse, (hot | (cold & (gradient < rules.gradient_low_k_km))) & ~refuse
 
 
 def _total_depth(frame: pd.DataFrame) -> tuple[Flags, Flags]:
@@ -215,10 +234,12 @@ def _total_depth(frame: pd.DataFrame) -> tuple[Flags, Flags]:
     return as_given, bottom & (other <= total + 10.0) & (depth < 0.5 * total)
 
 
-def _backed_by_own_well(frame: pd.DataFrame, gradient: Array) -> Flags:
-    """Tell which readings agree with those at other depths of their well."""
+def _own_well_agrees(frame: pd.DataFrame) -> tuple[Flags, Flags]:
+    """Tell which readings those at other depths of their well say are not too cold, too hot."""
+    gradient = frame["gradient_k_km"].to_numpy(float)
     values = frame[["row", "depth_m"]].assign(gradient=gradient)
     wells = values.groupby("row")
     deepest, shallowest = (wells["depth_m"].transform(how) for how in ("max", "min"))
     spread = (deepest - shallowest > 0.2 * deepest).to_numpy()
-    return spread & (wells["gradient"].transform("median").to_numpy() >= 0.75 * gradient)
+    middle = wells["gradient"].transform("median").to_numpy()
+    return spread & (gradient >= 0.75 * middle), spread & (middle >= 0.75 * gradient)

@@ -10,10 +10,19 @@ from typing import Any, TypeVar
 from pydantic import BaseModel, ValidationError
 
 from basinheat.errors import UserError
-from basinheat.settings.check_tables import table_faults
-from basinheat.settings.files import located
+from basinheat.settings.check_tables import las_units, rock_faults, table_faults
+from basinheat.settings.files import catalogue_sets, located, matches
 from basinheat.settings.heat import Conductivity
-from basinheat.settings.inputs import Rasters, ReadingsFile, TableFile, WellsFile
+from basinheat.settings.inputs import (
+    HeatFlowFile,
+    LasFile,
+    LayersFile,
+    PlacesFile,
+    Rasters,
+    ReadingsFile,
+    TableFile,
+    WellsFile,
+)
 from basinheat.settings.maps import Kriging, Maps
 
 S = TypeVar("S", bound=BaseModel)
@@ -21,8 +30,9 @@ S = TypeVar("S", bound=BaseModel)
 _TABLES = {
     "wells": WellsFile,
     "readings": ReadingsFile,
-    "layers": TableFile,
+    "layers": LayersFile,
     "surveys": TableFile,
+    "heat_flow": HeatFlowFile,
 }
 
 
@@ -60,8 +70,9 @@ def _inputs(inputs: Any, folder: str | Path) -> list[str]:
     faults = []
     for kind, path, table in _tables(inputs):
         faults += table_faults(path, kind, table, folder)
-        if isinstance(table, WellsFile) and table.crs is not None:
+        if isinstance(table, PlacesFile) and table.crs is not None:
             faults += _crs(f"{path}.crs", table.crs)
+    faults += _logs(inputs.get("las"), folder)
     rasters = _valid(Rasters, inputs.get("rasters", {}))
     for key, name in rasters or ():
         faults += _absent(f"inputs.rasters.{key}", name, folder)
@@ -69,6 +80,21 @@ def _inputs(inputs: Any, folder: str | Path) -> list[str]:
     return faults + (
         _absent("inputs.decisions", decisions, folder) if isinstance(decisions, str) else []
     )
+
+
+def _logs(entries: Any, folder: str | Path) -> list[str]:
+    """Return the faults of the well logs: none found, CRS or unit that is none."""
+    faults = []
+    for index, entry in enumerate(entries if isinstance(entries, list) else []):
+        logs, path = _valid(LasFile, entry), f"inputs.las[{index}]"
+        if logs is None:
+            continue
+        if not matches(logs.file, folder):
+            faults += _absent(f"{path}.file", logs.file, folder)
+        if logs.crs is not None:
+            faults += _crs(f"{path}.crs", logs.crs)
+        faults += las_units(path, logs)
+    return faults
 
 
 def _tables(inputs: Mapping[str, Any]) -> Iterator[tuple[str, str, TableFile]]:
@@ -87,13 +113,54 @@ def _scenario(config: Mapping[str, Any], folder: str | Path) -> list[str]:
     kriging = _valid(Kriging, config.get("kriging", {}))
     if kriging is not None:
         faults += _pinned("kriging.variogram.pinned", kriging.variogram.pinned, folder)
+    surface, inputs = config.get("surface_temperature"), config.get("inputs")
+    inputs = inputs if isinstance(inputs, Mapping) else {}
     conductivity = _valid(Conductivity, config.get("conductivity", {}))
     if conductivity is not None:
-        faults += _absent("conductivity.catalogue", conductivity.catalogue, folder)
-    surface, inputs = config.get("surface_temperature"), config.get("inputs")
-    if isinstance(surface, Mapping) and isinstance(inputs, Mapping):
+        faults += _rocks(conductivity, inputs, folder)
+    if isinstance(surface, Mapping):
         faults += _surface_source(surface.get("model"), inputs)
     return faults
+
+
+def _rocks(conductivity: Conductivity, inputs: Mapping[str, Any], folder: str | Path) -> list[str]:
+    """Return the faults of the files of rock, and of the names of rock in the config."""
+    source, formations = conductivity.catalogue, conductivity.formations
+    faults = []
+    if source not in catalogue_sets():
+        faults = [
+            f"{fault}; a set of the program is {' or '.join(catalogue_sets())}"
+            for fault in _absent("conductivity.catalogue", source, folder)
+        ]
+    if isinstance(formations, str):
+        faults += _absent("conductivity.formations", formations, folder)
+    return faults or _names_of_rock(conductivity, inputs, folder)
+
+
+def _names_of_rock(
+    conductivity: Conductivity, inputs: Mapping[str, Any], folder: str | Path
+) -> list[str]:
+    """Return the names of rock in the config that stand for nothing."""
+    from basinheat.conductivity.mixtures import Vocabulary, load_formations
+    from basinheat.conductivity.overrides import load_overridden
+
+    source, formations = conductivity.catalogue, conductivity.formations
+    if source not in catalogue_sets():
+        source = located(source, folder)[0]
+    if isinstance(formations, str):
+        formations = located(formations, folder)[0]
+    try:
+        rocks = load_overridden(source, conductivity.model_dump())
+        words = Vocabulary(rocks, conductivity.lithologies, load_formations(formations))
+    except UserError as error:
+        return list(error.faults)
+    faults = [
+        f'conductivity.{setting}: "{name}" {words.meaning(name).why}'
+        for setting in ("default_lithology", "non_net_lithology")
+        if words.meaning(name := getattr(conductivity, setting)).code
+    ]
+    tops = [(path, table) for _, path, table in _tables(inputs) if isinstance(table, LayersFile)]
+    return faults + [fault for path, table in tops for fault in rock_faults(path, table, words)]
 
 
 def _surface_source(model: Any, inputs: Mapping[str, Any]) -> list[str]:

@@ -3,13 +3,16 @@
 from __future__ import annotations
 
 import json
+import re
 import sys
 from collections.abc import Iterator, Mapping
 from pathlib import Path
+from string import Formatter
 from typing import Any
 
 from basinheat.settings.columns import INPUT_COLUMNS, ONE_OF, InputColumn
 from basinheat.settings.model import Settings
+from basinheat.settings.wells import Screening
 
 _TYPES = {
     "string": "text",
@@ -31,6 +34,7 @@ _ROW = {
     "readings": "temperature reading",
     "layers": "rock interval of a well",
     "surveys": "station of a deviation survey; wells without one are vertical",
+    "heat_flow": "heat flow that others found",
 }
 Row = tuple[str, str, str, str]
 
@@ -63,13 +67,36 @@ def columns_tables() -> str:
     return "\n\n".join(parts)
 
 
+def flags_table() -> str:
+    """Return a table of every flag of screening, the grave ones first, in Markdown."""
+    from basinheat.screening.codes import READINGS, SEVERITIES, WELLS
+
+    rows = [
+        (f"`{code}`", of, flag.severity, _without_record(flag.sentence))
+        for of, flags in (("wells", WELLS), ("readings", READINGS))
+        for code, flag in flags.items()
+    ]
+    rows.sort(key=lambda row: (row[1] != "wells", SEVERITIES.index(row[2]), row[0]))
+    return _table(("flag", "table", "severity", "meaning"), rows)
+
+
 def refreshed(text: str) -> str:
     """Return the text with what stands between its markers made anew."""
-    for name, tables in (("settings", settings_tables()), ("columns", columns_tables())):
+    made = {"flags": flags_table(), "settings": settings_tables(), "columns": columns_tables()}
+    for name, tables in made.items():
         begin, end = f"<!-- {name}: generated -->", f"<!-- {name}: end -->"
         before, rest = text.split(begin)
         text = f"{before}{begin}\n\n{tables}\n\n{end}{rest.split(end)[1]}"
     return text
+
+
+def _without_record(sentence: str) -> str:
+    """Return the sentence of a flag for no record: settings at their defaults, dots for values."""
+    rules, text = Screening().model_dump(), ""
+    for before, field, form, _ in Formatter().parse(sentence):
+        value = format(rules[field], form or "") if field in rules else "…"
+        text += before + (value if field else "")
+    return re.sub(r"\((screening\.\w+)\)", r"(`\1`)", text)
 
 
 def _column(name: str, column: InputColumn) -> Row:
@@ -102,8 +129,11 @@ def _rows(
 def _together(rows: list[Row]) -> list[Row]:
     """Return the rows with those that every kind of input table has told once, and first."""
     tails = [path.partition("[]")[2] for path, *_ in rows]
-    shared = {tail for tail in tails if tail and tails.count(tail) == len(INPUT_COLUMNS)}
-    common = {tail: row for tail, row in zip(tails, rows, strict=True) if tail in shared}
+    shared = {tail for tail in tails if tail and tails.count(tail) >= len(INPUT_COLUMNS)}
+    common: dict[str, Row] = {}
+    for tail, row in zip(tails, rows, strict=True):
+        if tail in shared:
+            common.setdefault(tail, row)
     told_once = [(f"`inputs.*[]{tail}", *row[1:]) for tail, row in common.items()]
     return told_once + [row for tail, row in zip(tails, rows, strict=True) if tail not in shared]
 
@@ -117,8 +147,9 @@ def _inner(field: Mapping[str, Any], schema: Mapping[str, Any]) -> list[Mapping[
 
 def _value(field: Mapping[str, Any]) -> str:
     """Return what a setting may be, in words."""
-    if "anyOf" in field:
-        values = [_value(part) for part in field["anyOf"] if part.get("type") != "null"]
+    if "anyOf" in field or "oneOf" in field:
+        parts = field.get("anyOf", field.get("oneOf", []))
+        values = [_value(part) for part in parts if part.get("type") != "null"]
         return ", ".join(dict.fromkeys(values))
     if "enum" in field:
         plain = all(word.isidentifier() for word in field["enum"])

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import difflib
 import json
+import re
 from collections.abc import Iterable, Mapping, Sequence
 from typing import Any, get_args
 
@@ -19,8 +20,12 @@ _SENTENCES = {
     "string_too_short": "must not be empty",
     "int_from_float": "must be a whole number{got}",
     "finite_number": "must be a finite number{got}",
-    "string_pattern_mismatch": "must match {pattern}{got}",
     "union_tag_not_found": "is missing; it says which of the models is meant",
+}
+# Patterns in words.
+NAME = r"^[a-z0-9][a-z0-9_]{0,39}$"
+_PATTERNS = {
+    NAME: "be small letters, digits and _, at most 40, not first a _, such as my_wells_2026",
 }
 _KINDS = {
     "float": "a number",
@@ -88,12 +93,29 @@ def _sentence(fault: Mapping[str, Any], model: type[BaseModel]) -> str:
         return str(context["error"])
     if context.get("gt") == 0:
         return f"must be positive (got {got(value)})"
+    if kind == "string_pattern_mismatch":
+        wanted = _PATTERNS.get(context["pattern"], f"match {context['pattern']}")
+        return f"must {wanted} (got {got(value)})"
     if kind in _SENTENCES:
         return _SENTENCES[kind].format(got=f" (got {got(value)})", **context)
     wanted = _KINDS.get(kind.removesuffix("_type").removesuffix("_parsing"))
-    return (
-        f"must be {wanted} (got {got(value)})" if wanted else f"{fault['msg']} (got {got(value)})"
-    )
+    if wanted is None:
+        return f"{fault['msg']} (got {got(value)})"
+    return f"must be {wanted} (got {got(value)})" + (_as_list(fault, model) * (wanted == "a list"))
+
+
+def _as_list(fault: Mapping[str, Any], model: type[BaseModel]) -> str:
+    """Return how one thing is written where a list is wanted, "" where that is no help."""
+    value, items = fault["input"], _models(_annotation(fault["loc"], model))
+    if isinstance(value, Mapping) and "file" in value:
+        return f"; write [{{file: {value['file']}{', ...' * (len(value) > 1)}}}]"
+    if isinstance(value, bool) or not isinstance(value, str | int | float) or value == "":
+        return ""
+    plain = str(value) if re.fullmatch(r"[\w./+-]+", str(value)) else got(value)
+    if items:
+        named = any("file" in item.model_fields for item in items)
+        return f"; write [{{file: {plain}}}]" if named else ""
+    return f"; write [{plain}]"
 
 
 def _choice(value: Any, expected: str) -> str:
@@ -125,14 +147,20 @@ def _dotted(place: Sequence[str | int]) -> str:
 
 
 def _keys(loc: Sequence[str | int], model: type[BaseModel]) -> list[str]:
-    """Return the keys that are known at a place, by walking the models along it."""
+    """Return the keys that are known at a place."""
+    models = _models(_annotation(loc[:-1], model))
+    return sorted({field.alias or key for one in models for key, field in one.model_fields.items()})
+
+
+def _annotation(loc: Sequence[str | int], model: type[BaseModel]) -> Any:
+    """Return the type of what stands at a place, by walking the models along it."""
     here: Any = model
-    for step in loc[:-1]:
+    for step in loc:
         models = _models(here)
         tagged = [one for one in models if _tag(one) == step]
         found = [one.model_fields[step].annotation for one in models if step in one.model_fields]
         here = tagged[0] if tagged else (found[0] if found else here)
-    return sorted({key for one in _models(here) for key in one.model_fields})
+    return here
 
 
 def _models(annotation: Any) -> list[type[BaseModel]]:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import sys
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping
 from pathlib import Path
 from typing import Any
 
@@ -23,6 +23,8 @@ OVERLAID = (
     "heat_flow",
     "kriging",
 )
+# YAML may say much in little: an alias that holds itself never ends.
+DEEPEST, MOST = 50, 100_000
 
 
 def load_config(
@@ -51,7 +53,7 @@ def load_config(
     UserError
         With one line for every fault.
     """
-    plain = _plain(raw)
+    plain = _plain(raw, iter(range(MOST)))
     faults: list[str] = []
     configs = {"base": plain}
     for name, overlay in _overlays(plain, faults).items():
@@ -89,15 +91,25 @@ def merged(base: Any, overlay: Any) -> Any:
     return {**base, **overlay, **both}
 
 
-def _plain(raw: Any) -> Any:
+def _plain(raw: Any, left: Iterator[int], depth: int = 0) -> Any:
     """Return the config as plain dicts, their keys sorted; an empty section means its defaults.
 
-    Sorted, so that the order in which a config is written changes neither jobs nor bytes.
+    Sorted, so that the order in which a config is written changes neither jobs nor bytes. ``left``
+    counts down the values there may be.
     """
+    if depth > DEEPEST or next(left, None) is None:
+        raise UserError(
+            f"the config: it has more than {MOST:,} values or {DEEPEST} levels one inside another; "
+            "does an alias (*name) stand inside what it names?"
+        )
     if isinstance(raw, Mapping):
-        filled = {str(key): _plain(value) for key, value in raw.items() if value is not None}
+        filled = {
+            str(key): _plain(value, left, depth + 1)
+            for key, value in raw.items()
+            if value is not None
+        }
         return dict(sorted(filled.items()))
-    return [_plain(value) for value in raw] if isinstance(raw, list) else raw
+    return [_plain(value, left, depth + 1) for value in raw] if isinstance(raw, list) else raw
 
 
 def _overlays(plain: dict[str, Any], faults: list[str]) -> dict[str, dict[str, Any]]:

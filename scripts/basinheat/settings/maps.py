@@ -8,7 +8,7 @@ from pydantic import Field, PositiveFloat, PositiveInt, ValidationInfo, field_va
 
 from basinheat.settings.base import Section
 
-Model = Literal["auto", "exponential", "spherical", "gaussian", "matern15"]
+Model = Literal["auto", "exponential", "spherical", "gaussian", "matern15", "matern25"]
 
 
 class Mask(Section):
@@ -89,7 +89,11 @@ class Variogram(Section):
 class Kriging(Section):
     """Interpolation."""
 
-    engine: Literal["auto", "global", "pykrige"] = Field(default="auto", description="engine")
+    engine: Literal["auto", "global", "tiles", "pykrige"] = Field(
+        default="auto",
+        description="global: all wells at once; tiles: the wells around each tile of the map; "
+        "auto: tiles beyond 5,000 wells; pykrige: a check on small runs",
+    )
     variogram: Variogram = Field(default_factory=Variogram, description="covariance model")
     drift: Literal["none", "linear"] = Field(default="none", description="trend in x and y")
 

@@ -7,12 +7,14 @@ from typing import Annotated, Any
 from pydantic import Field, StringConstraints
 
 from basinheat.settings.base import Section
+from basinheat.settings.faults import NAME
 from basinheat.settings.heat import Conductivity, Correction, Gradient, HeatFlow
 from basinheat.settings.inputs import Inputs
 from basinheat.settings.maps import Kriging, Maps, Validation
+from basinheat.settings.report import Report
 from basinheat.settings.wells import LinearSurface, Screening, SurfaceTemperature
 
-Name = Annotated[str, StringConstraints(pattern=r"^[a-z0-9][a-z0-9_]{0,39}$")]
+Name = Annotated[str, StringConstraints(pattern=NAME)]
 
 
 class Settings(Section):
@@ -33,6 +35,7 @@ class Settings(Section):
     maps: Maps = Field(default_factory=Maps, description="what is mapped")
     kriging: Kriging = Field(default_factory=Kriging, description="interpolation")
     validation: Validation = Field(default_factory=Validation, description="how maps are judged")
+    report: Report = Field(default_factory=Report, description="pages of the delivery")
     scenarios: dict[Name, dict[str, Any]] = Field(
         default_factory=dict, description="overlays, side by side; base is always there"
     )

@@ -44,6 +44,22 @@ class Screening(Section):
     )
     vintage_year: PositiveInt = Field(default=1950, description="readings before are less certain")
     vintage_std_k: NonNegativeFloat = Field(default=2.0, description="by this much, in quadrature")
+    time_disagreement_h: PositiveFloat = Field(
+        default=1.0, description="flag a noted duration and times of day that differ by more"
+    )
+    heaping_score: PositiveFloat = Field(
+        default=3.0, description="score of values ending in 0 or 5 from which a file was rounded"
+    )
+    same_temperature_score: PositiveFloat = Field(
+        default=2.0,
+        description="runs whose expected rise is within so many of its errors may read the same",
+    )
+    hottest_air_degc: PositiveFloat = Field(
+        default=45.0, description="flag logs below it that the air of a hot season may have warmed"
+    )
+    gas_std_k: PositiveFloat = Field(
+        default=8.0, description="standard uncertainty of a test that gas may have cooled"
+    )
 
 
 class _Surface(Section):

@@ -91,7 +91,28 @@ class Table:
     @classmethod
     def save(cls, frame: pd.DataFrame, path: str | Path) -> None:
         """Write the table as Parquet, whole or not at all, with units in the field metadata."""
-        frame = cls.conform(frame)
+        cls.save_parts([frame], path)
+
+    @classmethod
+    def save_parts(cls, frames: Iterable[pd.DataFrame], path: str | Path) -> None:
+        """Write a table that comes in parts, and is too long to be held at once, as ``save``."""
+        part = Path(f"{path}.part")
+        part.parent.mkdir(parents=True, exist_ok=True)
+        writer = None
+        try:
+            for frame in frames:
+                table = cls._arrow(cls.conform(frame))
+                writer = writer or pq.ParquetWriter(part, table.schema)
+                writer.write_table(table)
+        finally:
+            if writer is not None:
+                writer.close()
+        if writer is None:
+            raise ValueError(f"{path}: no part to write")
+        os.replace(part, path)
+
+    @classmethod
+    def _arrow(cls, frame: pd.DataFrame) -> pa.Table:
         fields = [
             pa.field(
                 name,
@@ -107,10 +128,7 @@ class Table:
             pa.array(_rounded(frame[name]), type=field.type, from_pandas=True)
             for name, field in zip(frame.columns, fields, strict=True)
         ]
-        part = Path(f"{path}.part")
-        part.parent.mkdir(parents=True, exist_ok=True)
-        pq.write_table(pa.Table.from_arrays(arrays, schema=pa.schema(fields)), part)
-        os.replace(part, path)
+        return pa.Table.from_arrays(arrays, schema=pa.schema(fields))
 
     @classmethod
     def load(cls, path: str | Path) -> pd.DataFrame:
@@ -150,6 +168,8 @@ def _cast(values: pd.Series | None, column: Column, rows: int) -> pd.Series | np
     if column.kind == "text":
         if values is None:
             return pd.Series([""] * rows, dtype=object)
+        if isinstance(values.dtype, pd.StringDtype):
+            return values.fillna("").astype(object).array
         return values.astype(object).where(values.notna(), "").astype(str).astype(object).array
     if values is None:
         return {"number": np.full(rows, np.nan), "count": np.zeros(rows, np.int64)}.get(

@@ -34,3 +34,16 @@ class Closure(Table):
         "left_out_std_k": number("K", "standard uncertainty of that difference"),
         "method": text("correction method"),
     }
+
+
+class WellColumns(Table):
+    """Rebuilt temperature columns of the wells, by well and depth, to below the deepest reading."""
+
+    columns = {
+        "well": text("well"),
+        "depth_m": number("m", "true vertical, below ground or sea floor"),
+        "rebuilt_degc": number("degC", "temperature of the rebuilt column, the well in the maps"),
+        "rebuilt_std_k": number("K", "its standard uncertainty, all parts"),
+        "predicted_degc": number("degC", "the same with the well left out of all maps"),
+        "predicted_std_k": number("K", "its standard uncertainty, all parts"),
+    }

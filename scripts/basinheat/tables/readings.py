@@ -18,6 +18,7 @@ class Readings(Table):
         "kind": text("bht, dst, equilibrium or corrected"),
         "since_circulation_h": number("h", "time since circulation stopped"),
         "circulation_h": number("h", "how long mud circulated before"),
+        "drilling_h": number("h", "from the bit's passing this depth to the last circulation"),
         "hole_radius_m": number("m", "radius of the hole at the reading"),
         "mud_temperature_degc": number("degC", "mud temperature at hole bottom"),
         "log_run": text("log run"),

@@ -1,12 +1,12 @@
 """The ledger of refused rows."""
 
-import os
 from pathlib import Path
 
 import pandas as pd
 
 from basinheat.tables.contract import Table, text
 from basinheat.tables.contract import count as whole
+from basinheat.tables.spreadsheet import write_csv
 
 
 class Rejected(Table):
@@ -29,8 +29,5 @@ class Rejected(Table):
 
     @classmethod
     def save_csv(cls, frame: pd.DataFrame, path: str | Path) -> None:
-        """Write the ledger as CSV, whole or not at all."""
-        part = Path(f"{path}.part")
-        part.parent.mkdir(parents=True, exist_ok=True)
-        cls.conform(frame).to_csv(part, index=False, lineterminator="\n")
-        os.replace(part, path)
+        """Write the ledger as CSV, whole or not at all, its text inert."""
+        write_csv(cls.conform(frame), path)

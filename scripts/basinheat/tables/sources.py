@@ -3,9 +3,10 @@
 from basinheat.tables.contract import Table, number, text
 from basinheat.tables.contract import count as whole
 
-# Names that more than one stage knows: two sources, and how those of one kind begin.
+# Names that more than one stage knows: single sources, and how those of one kind begin.
 SURFACE, PRODUCTION = "surface_temperature", "rock:heat_production"
 LITHOLOGY, ROCK = "conductivity:", "rock:"
+PUBLISHED = "heat_flow:published"
 
 
 class Sources(Table):
