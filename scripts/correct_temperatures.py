@@ -15,4 +15,5 @@ corrected = corrections.correct(
 tables.Estimates.save(corrected.estimates, snakemake.output.estimates)
 tables.Sources.save(corrected.sources, snakemake.output.sources)
 tables.Rejected.save(corrected.rejected, snakemake.output.rejected)
+tables.Calibration.save(corrected.calibration, snakemake.output.calibration)
 documents.save(corrected.recovery, snakemake.output.recovery)

@@ -11,7 +11,8 @@ from basinheat.corrections.method import Context, Floats, Loading, Method, Outco
 from basinheat.corrections.sets import ReadingSets
 
 Ints = NDArray[np.int64]
-_OTHER_KIND = -1
+# METHODS Q21 (common practice): a correction beyond this share of the rise above the surface.
+_LARGE, LARGE = 0.5, "correction_above_half_of_rise"
 # Two sets further apart are never one place.
 _WELL_STRIDE_M = 1.0e6
 
@@ -32,6 +33,8 @@ class Choice:
         Shared sources, 0 where another method was chosen.
     learned : dict
         By method, what was learned.
+    outcomes : dict of int to Outcome
+        By place in the order, all that a method said; methods that were not asked are absent.
     """
 
     rank: Ints
@@ -43,6 +46,7 @@ class Choice:
     flags: NDArray[np.object_]
     loadings: dict[str, Loading]
     learned: dict[str, dict[str, object]]
+    outcomes: dict[int, Outcome]
 
 
 def choose(sets: ReadingSets, kind: str, order: list[Method], context: Context) -> Choice:
@@ -65,7 +69,8 @@ def choose(sets: ReadingSets, kind: str, order: list[Method], context: Context) 
         One row per set.
     """
     rank = np.full(len(sets), -1, np.int64)
-    reason = np.full((len(sets), len(order)), _OTHER_KIND, np.int64)
+    # Methods of another kind of reading say nothing of these sets, and nothing is said of them.
+    reason = np.zeros((len(sets), len(order)), np.int64)
     outcomes: dict[int, Outcome] = {}
     for place, method in enumerate(order):
         if method.kind != kind or len(sets) == 0 or (rank >= 0).all():
@@ -84,7 +89,7 @@ def _merge(
         for name in ("temperature_degc", "independent_std_k", "well_std_k")
     }
     classes = np.full(len(sets), "", object)
-    flags = np.full(len(sets), "", object)
+    raised: dict[str, NDArray[np.bool_]] = {}
     loadings: dict[str, Loading] = {}
     for place, outcome in outcomes.items():
         rows = rank == place
@@ -93,21 +98,39 @@ def _merge(
         classes[rows] = outcome.variance_class[rows]
         for source, loading in outcome.loadings.items():
             own = np.where(rows, loading.values, 0.0)
+            if source in loadings:
+                own = own + loadings[source].values
             if np.any(own != 0.0):
                 loadings[source] = Loading(own, loading.prior_std, loading.unit)
-        for flag in sorted(outcome.flags):
-            here = rows & outcome.flags[flag]
-            flags[here] += np.where(flags[here] == "", flag, ";" + flag)
+        for flag, here in outcome.flags.items():
+            raised[flag] = raised.get(flag, np.zeros(len(sets), bool)) | (rows & here)
     learned = {order[place].name: o.learned for place, o in outcomes.items() if o.learned}
     return Choice(
         rank=rank,
         variance_class=classes,
-        flags=flags,
+        flags=_joined(raised | {LARGE: _large(sets, numbers["temperature_degc"])}, len(sets)),
         loadings=loadings,
         learned=learned,
+        outcomes=outcomes,
         passed_over=_passed_over(order, rank, reason),
         **numbers,
     )
+
+
+def _large(sets: ReadingSets, temperature: Floats) -> NDArray[np.bool_]:
+    """Tell which corrections are larger than the half of the rise above the surface."""
+    with np.errstate(invalid="ignore"):
+        rise = temperature - sets.surface_temperature_degc
+        return np.asarray(temperature - sets.warmest_degc > _LARGE * rise)
+
+
+def _joined(raised: dict[str, NDArray[np.bool_]], n: int) -> NDArray[np.object_]:
+    """Return the names of the flags of each of n sets, sorted and joined."""
+    out = np.full(n, "", object)
+    for name in sorted(raised):
+        here = raised[name]
+        out[here] += np.where(out[here] == "", name, ";" + name)
+    return out
 
 
 def _passed_over(order: list[Method], rank: Ints, reason: Ints) -> NDArray[np.object_]:
@@ -126,8 +149,6 @@ def _passed_over(order: list[Method], rank: Ints, reason: Ints) -> NDArray[np.ob
 
 
 def _sentence(method: Method, code: int) -> str:
-    if code == _OTHER_KIND:
-        return f"{method.name}: treats {method.kind} readings"
     return f"{method.name}: {method.reasons[code - 1]}"
 
 

@@ -172,6 +172,7 @@ def _arrays(
         since_circulation_h=since,
         depth_std_m=np.nan_to_num(largest(padded("depth_std_m"))),
         circulation_h=largest(padded("circulation_h")),
+        drilling_h=largest(padded("drilling_h")),
         hole_radius_m=np.where(radius > 0, radius, settings.hole_radius_m),
         surface_temperature_degc=surface,
         surface_std_k=wells["surface_temperature_std_k"].to_numpy(np.float64)[well],

@@ -4,12 +4,16 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass, field
+from typing import TYPE_CHECKING
 
 import numpy as np
 from numpy.typing import NDArray
 
 from basinheat.corrections.sets import ReadingSets
 from basinheat.corrections.trend import RegionalTrend
+
+if TYPE_CHECKING:
+    from basinheat.corrections.calibration.learned import Calibration
 
 Floats = NDArray[np.float64]
 Flags = NDArray[np.bool_]
@@ -88,6 +92,8 @@ class Context:
         Share of a method's own scatter that is common to a well.
     surface_shared_std_k : float, K
         Standard uncertainty of the surface temperature that the whole basin shares.
+    calibration : Calibration or None
+        What pairs of mud-cooled readings and direct temperatures teach.
     """
 
     trend: RegionalTrend
@@ -97,6 +103,7 @@ class Context:
     circulation_factor: float
     well_share: float
     surface_shared_std_k: float
+    calibration: Calibration | None = None
 
 
 @dataclass(frozen=True)

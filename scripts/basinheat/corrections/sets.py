@@ -30,8 +30,8 @@ class ReadingSets:
         The readings, m, degC, K, h.
     depth_std_m : (sets,) array, m
         Standard uncertainty of depth.
-    circulation_h, hole_radius_m : (sets,) array, h, m
-        Longest noted circulation (NaN for none) and widest hole.
+    circulation_h, drilling_h, hole_radius_m : (sets,) array, h, h, m
+        Longest noted circulation and drilling (NaN for none) and widest hole.
     surface_temperature_degc, surface_std_k : (sets,) array, degC, K
         Surface temperature and the well's own part of its standard uncertainty.
     mud_temperature_degc : (sets,) array, degC
@@ -51,6 +51,7 @@ class ReadingSets:
     since_circulation_h: Floats
     depth_std_m: Floats
     circulation_h: Floats
+    drilling_h: Floats
     hole_radius_m: Floats
     surface_temperature_degc: Floats
     surface_std_k: Floats
@@ -107,6 +108,10 @@ class ReadingSets:
         """Carry every reading to the depth of its set with the region's gradient, (sets,) K/m."""
         shift = gradient_k_m[:, None] * (self.depth_m[:, None] - self.reading_depth_m)
         return replace(self, temperature_degc=self.temperature_degc + shift)
+
+    def depth_error_k(self, gradient_k_m: Floats) -> Floats:
+        """Return what an error of depth does to the temperature, (sets,) in K."""
+        return np.asarray(np.abs(gradient_k_m) * self.depth_std_m)
 
     def take(self, index: NDArray[np.int64] | NDArray[np.bool_]) -> ReadingSets:
         """Return some of the sets."""

@@ -3,13 +3,14 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
 import pandas as pd
 
 from basinheat import tables
+from basinheat.corrections.calibration import stage as calibration
 from basinheat.corrections.choose import Choice, choose, counts
 from basinheat.corrections.gather import Gathered, gather, refuse
 from basinheat.corrections.method import Context, Floats, Method
@@ -27,8 +28,8 @@ class Corrected:
 
     Parameters
     ----------
-    estimates, sources, rejected : DataFrame
-        Tables by the contracts Estimates, Sources, Rejected.
+    estimates, sources, rejected, calibration : DataFrame
+        Tables by the contracts Estimates, Sources, Rejected, Calibration.
     recovery : dict
         What was learned from the basin, plain numbers for the report.
     """
@@ -36,7 +37,56 @@ class Corrected:
     estimates: pd.DataFrame
     sources: pd.DataFrame
     rejected: pd.DataFrame
+    calibration: pd.DataFrame
     recovery: dict[str, Any]
+
+
+@dataclass(frozen=True)
+class Basis:
+    """What every method is given.
+
+    Parameters
+    ----------
+    gathered : Gathered
+        Readings in sets as they were read.
+    sets : dict of str to ReadingSets
+        By kind, the readings of each set carried to one depth.
+    context : Context
+        Settings, and what the whole basin tells.
+    """
+
+    gathered: Gathered
+    sets: dict[str, ReadingSets]
+    context: Context
+
+
+def prepare(
+    readings: pd.DataFrame,
+    wells: pd.DataFrame,
+    settings: Correction,
+    holdout: Iterable[str] = (),
+    surface_shared_std_k: float = 0.7,
+) -> Basis:
+    """Gather readings into sets and learn the region's trend; arguments as for ``correct``."""
+    gathered = gather(readings, wells, settings, holdout)
+    depth, rise = _overview(gathered)
+    context = Context(
+        trend=fit_trend(depth, rise),
+        region=settings.region,
+        diffusivity_m2_s=settings.diffusivity_m2_s,
+        circulation_h=settings.circulation_h,
+        circulation_factor=settings.circulation_factor,
+        well_share=settings.well_share,
+        surface_shared_std_k=surface_shared_std_k,
+    )
+    sets = {
+        kind: each.at_one_depth(context.trend.gradient_k_m(each.depth_m))
+        for kind, each in gathered.sets.items()
+    }
+    order = [METHODS[name] for name in settings.order]
+    place = wells.set_index("well")[["easting_m", "northing_m"]].reindex(gathered.well_names)
+    learned = calibration.learn(sets, order, context, place.to_numpy(np.float64), settings)
+    return Basis(gathered, sets, replace(context, calibration=learned))
 
 
 def correct(
@@ -65,35 +115,34 @@ def correct(
         Every reading is in one estimate or one row of the ledger.
     """
     order = [METHODS[name] for name in settings.order]
-    gathered = gather(readings, wells, settings, holdout)
-    depth, rise = _overview(gathered)
-    context = Context(
-        trend=fit_trend(depth, rise),
-        region=settings.region,
-        diffusivity_m2_s=settings.diffusivity_m2_s,
-        circulation_h=settings.circulation_h,
-        circulation_factor=settings.circulation_factor,
-        well_share=settings.well_share,
-        surface_shared_std_k=surface_shared_std_k,
-    )
-    chosen = {
-        kind: (level, choose(level, kind, order, context))
-        for kind, level in (
-            (kind, sets.at_one_depth(context.trend.gradient_k_m(sets.depth_m)))
-            for kind, sets in gathered.sets.items()
-        )
-    }
+    basis = prepare(readings, wells, settings, holdout, surface_shared_std_k)
+    gathered, context = basis.gathered, basis.context
+    chosen = {kind: (sets, choose(sets, kind, order, context)) for kind, sets in basis.sets.items()}
     estimates = _estimates(gathered, chosen, order, context, settings.same_depth_m)
     rejected = pd.concat([gathered.rejected, _no_method(gathered, chosen)], ignore_index=True)
+    _check_counts(len(readings), estimates, rejected)
+    mud_cooled, choice = chosen.get("bht", (None, None))
+    pairs = calibration.table(
+        context.calibration, mud_cooled, choice, order, context, gathered.well_names
+    )
+    learned = calibration.record(context.calibration, pairs)
     return Corrected(
         estimates=estimates,
         sources=_sources(estimates, chosen),
         rejected=tables.Rejected.conform(rejected),
-        recovery=_recovery(chosen, context, estimates),
+        calibration=pairs,
+        recovery=_recovery(chosen, context, estimates) | {"calibration": learned},
     )
 
 
 Chosen = dict[str, tuple[ReadingSets, Choice]]
+
+
+def _check_counts(read: int, estimates: pd.DataFrame, rejected: pd.DataFrame) -> None:
+    """Stop where a reading was lost or doubled: that would be an error of this program."""
+    used = int(estimates["n_readings"].sum())
+    if read != used + len(rejected):
+        raise RuntimeError(f"{read} readings, {used} in estimates and {len(rejected)} refused")
 
 
 def _overview(gathered: Gathered) -> tuple[Floats, Floats]:
@@ -150,7 +199,7 @@ def _rows(
         "temperature_degc": choice.temperature_degc,
         "temperature_std_k": choice.independent_std_k,
         # A depth error moves every reading of a well alike.
-        "well_std_k": np.hypot(choice.well_std_k, np.abs(gradient) * sets.depth_std_m),
+        "well_std_k": np.hypot(choice.well_std_k, sets.depth_error_k(gradient)),
         "raw_temperature_degc": raw,
         "correction_k": choice.temperature_degc - raw,
         "method": names[choice.rank],
@@ -167,14 +216,21 @@ def _rows(
 def _no_method(gathered: Gathered, chosen: Chosen) -> pd.DataFrame:
     """Return the ledger rows of readings that no method of the order can treat."""
     parts = []
-    for sets, choice in chosen.values():
+    for kind, (sets, choice) in chosen.items():
         none = choice.rank < 0
         place = sets.row[none]
-        why = np.repeat(choice.passed_over[none], (place >= 0).sum(1))
+        why = pd.Series(np.repeat(choice.passed_over[none], (place >= 0).sum(1)), dtype=object)
+        able = ", ".join(method.name for method in METHODS.values() if method.kind == kind)
         sentence = (
             "no method of correction.order applies ("
-            + pd.Series(why, dtype=object).str.replace(";", "; ", regex=False)
-            + "). Add a method that needs less, such as harrison1983 or uncorrected."
+            + why.where(why != "", f"none treats {kind} readings")
+            .astype(object)
+            .str.replace(";", "; ", regex=False)
+            + (
+                "). Add a method that needs less, such as harrison1983 or uncorrected."
+                if kind == "bht"
+                else f"). Add {able} to it."
+            )
         )
         parts.append(refuse(gathered.readings, place[place >= 0], "no_method", sentence))
     return pd.concat(parts, ignore_index=True) if parts else tables.Rejected.empty()
@@ -205,6 +261,7 @@ def _recovery(chosen: Chosen, context: Context, estimates: pd.DataFrame) -> dict
         "raw_trend": {
             "surface_gradient_k_km": context.trend.slope_k_m * 1e3,
             "bend_k_km2": context.trend.bend_k_m2 * 1e6,
+            "straight_below_m": float(min(context.trend.deepest_m, 1e5)),
         },
         "estimates": {
             str(name): int(n) for name, n in sorted(estimates["method"].value_counts().items())

@@ -40,12 +40,12 @@ _EARLIEST = 1.0
 _MOST_LEFT = 0.99
 _ROUNDS = 20
 
+# METHODS A4, A6.
 UNCERTAINTY = Uncertainty(
     _FLOOR_K,
     SHARED_K,
-    "METHODS A4: mud 10 K or more, reading, circulation time; not below 8 K (common practice, no "
-    "source)",
-    known_bias="low by 0.3 to 4 % of the cooling (METHODS A6): the share simulated for the "
+    "mud 10 K or more, reading, circulation time; not below 8 K (common practice, no source)",
+    known_bias="low by 0.3 to 4 % of the cooling, as simulated: the share simulated for the "
     "reading's own times is added; mud that warms more slowly than rock is shared error",
 )
 
@@ -88,6 +88,14 @@ def formation_degc(reading_degc: Floats, mud_degc: Floats, ratio: Floats) -> Flo
 def estimate(sets: ReadingSets, context: Context) -> Outcome:
     """Estimate formation temperatures from the latest timed reading of every set.
 
+    See :func:`from_mud`; the mud cooled the hole while it circulated.
+    """
+    return from_mud(sets, context, "bullard1947")
+
+
+def from_mud(sets: ReadingSets, context: Context, method: str) -> Outcome:
+    """Estimate formation temperatures from one reading and what is known of the mud.
+
     Mud whose temperature is not noted is taken half of the way from the surface to the region's
     formation temperature at that depth, which is found anew until it stays. An unknown t_c is
     integrated over its prior.
@@ -117,8 +125,8 @@ def estimate(sets: ReadingSets, context: Context) -> Outcome:
         reason=_reason(sets, context, temperature, middle, mud < reading),
         independent_std_k=independent,
         well_std_k=well,
-        variance_class=np.full(len(sets), "method:bullard1947"),
-        loadings={"method:bullard1947": Loading(shared, SHARED_K, "K")},
+        variance_class=np.full(len(sets), f"method:{method}"),
+        loadings={f"method:{method}": Loading(shared, SHARED_K, "K")},
         flags={
             "mud_assumed": guessed,
             "circulation_assumed": ~np.isfinite(sets.circulation_h),

@@ -23,11 +23,12 @@ _FLOORS_K = (7.0, 7.0, 9.0, 9.0)
 # No line source: early readings are as good as late ones, but warn where recovery hardly began.
 _EARLY = (0.0, 1.0)
 
+# METHODS A1, A6, A12.
 UNCERTAINTY = Uncertainty(
     _FLOORS_K[0],
     SHARED_K,
-    "METHODS A12 (common practice): 7 K; A1: regression, reading, diffusivity 30 %, radius 10 %",
-    known_bias="low, for it leaves circulation out (METHODS A6: 1 to 19 % of the cooling): the "
+    "common practice, no source: 7 K; regression, reading, diffusivity 30 %, radius 10 %",
+    known_bias="low, for it leaves circulation out (1 to 19 % of the cooling, as simulated): the "
     "share simulated for the set's own times is added",
 )
 

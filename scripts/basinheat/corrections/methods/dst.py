@@ -7,7 +7,8 @@ import numpy as np
 from basinheat.corrections.method import Context, Loading, Method, Outcome, Reference, Uncertainty
 from basinheat.corrections.sets import ReadingSets
 
-UNCERTAINTY = Uncertainty(3.0, 0.5, "common practice (METHODS A11, A12): liquid recovered, 3 K")
+# METHODS A11, A12.
+UNCERTAINTY = Uncertainty(3.0, 0.5, "common practice, no source: liquid recovered, 3 K")
 
 
 def estimate(sets: ReadingSets, context: Context) -> Outcome:

@@ -7,8 +7,9 @@ import numpy as np
 from basinheat.corrections.method import Context, Method, Outcome, Reference, Uncertainty
 from basinheat.corrections.sets import ReadingSets
 
+# METHODS A12.
 UNCERTAINTY = Uncertainty(
-    0.5, 0.0, "common practice (METHODS A12): log run after 30 × the drilling time, or fibre"
+    0.5, 0.0, "common practice, no source: log run after 30 × the drilling time, or fibre"
 )
 
 

@@ -17,11 +17,11 @@ from basinheat.corrections.sets import ReadingSets
 # Förster, Merriam & Davis (1997), Geol. Rundsch. 86, read in open code: K/m and K.
 _LINEAR_K_M, _CONSTANT_K = 0.017, -6.58
 
+# METHODS A9.
 UNCERTAINTY = Uncertainty(
     7.0,
     3.5,
-    "common practice (METHODS A9): 5 to 7 K in the region; shared part: a quarter of "
-    "the variance, no source",
+    "common practice, no source: 5 to 7 K in the region; shared part: a quarter of the variance",
 )
 
 

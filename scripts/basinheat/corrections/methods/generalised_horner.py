@@ -26,11 +26,12 @@ _FLOORS_K = (7.0, 7.0, 9.0, 9.0)
 # The wall function holds from κ t / a² = 0.5 on.
 _EARLY = (0.5, 1.0)
 
+# METHODS A6, A12.
 UNCERTAINTY = Uncertainty(
     _FLOORS_K[0],
     SHARED_K,
-    "METHODS A12 (common practice): 7 K; A6: diffusivity 30 % (shared) and hole radius 10 %",
-    known_bias="high by 1 to 4 % of the cooling where the thermometer reads mud (METHODS A6): the "
+    "common practice, no source: 7 K; diffusivity 30 % (shared) and hole radius 10 %",
+    known_bias="high by 1 to 4 % of the cooling where the thermometer reads mud, as simulated: the "
     "share simulated for the set's own times is taken out; half of it is shared error, for the "
     "wall has 0.1 to 0.8 %",
 )

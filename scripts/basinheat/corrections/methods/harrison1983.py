@@ -13,11 +13,11 @@ from basinheat.corrections.sets import ReadingSets
 _CONSTANT_K, _LINEAR, _QUADRATIC = -16.51213476, 0.01826842109, -2.344936959e-6
 VERTEX_M = -_LINEAR / (2.0 * _QUADRATIC)
 
+# METHODS A12.
 UNCERTAINTY = Uncertainty(
     8.0,
     4.0,
-    "common practice (METHODS A12): 8 K in the region; shared part: a quarter of the "
-    "variance, no source",
+    "common practice, no source: 8 K in the region; shared part: a quarter of the variance",
 )
 
 

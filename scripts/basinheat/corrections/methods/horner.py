@@ -14,11 +14,12 @@ _FLOORS_K = (6.0, 8.0, 8.0, 10.0)
 # METHODS A1 (common practice, supported by the simulations A6).
 _SPREAD, _LATE = (0.15, 0.3), 4.0
 
+# METHODS A1, A12.
 UNCERTAINTY = Uncertainty(
     _FLOORS_K[0],
     SHARED_K,
-    "METHODS A1: largest of regression, reading, circulation time and a floor; A12: 6 K for three "
-    "good points, 8 K for two",
+    "largest of regression, reading, circulation time and a floor of 6 K for three good points, "
+    "8 K for two (common practice, no source)",
     known_bias="low: the share of the cooling simulated for the set's own times is added where "
     "κ Δt / a² < 4",
 )

@@ -20,8 +20,7 @@ _FLOORS_K = (7.0, 7.0, 9.0, 9.0)
 UNCERTAINTY = Uncertainty(
     _FLOORS_K[0],
     SHARED_K,
-    "common practice, no source: 7 K as METHODS A12 has for the cylinder source, and the simulated "
-    "bias",
+    "common practice, no source: 7 K as for the cylinder source, and the simulated bias",
     known_bias="low, more than Horner's plot; no size is published, so nothing is added and the "
     "bias simulated for the set's own times is shared error",
 )

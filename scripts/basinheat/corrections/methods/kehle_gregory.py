@@ -15,11 +15,11 @@ _KELVIN_PER_FAHRENHEIT = 1.0 / 1.8
 # Where the cubic turns: the positive root of its derivative.
 SUMMIT_FT = float(np.roots(np.polyder(np.array(_CUBIC_F_FT))).max())
 
+# METHODS A12.
 UNCERTAINTY = Uncertainty(
     8.0,
     4.0,
-    "common practice (METHODS A12): 8 K in the region; shared part: a quarter of the "
-    "variance, no source",
+    "common practice, no source: 8 K in the region; shared part: a quarter of the variance",
 )
 
 

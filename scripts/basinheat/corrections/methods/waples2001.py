@@ -14,11 +14,11 @@ _LOG_TIME, _CONSTANT, _SCALE, _POWER = -0.1462, 1.699, 0.572, 0.075
 # (no source). Shared part of the 8 K: a quarter of the variance (common practice, no source).
 _HOME_K, _MEMORY_K = 8.0, 6.0
 
+# METHODS A12.
 UNCERTAINTY = Uncertainty(
     float(np.hypot(_HOME_K, _MEMORY_K)),
     float(np.hypot(0.5 * _HOME_K, _MEMORY_K)),
-    "common practice (METHODS A12): 8 K in the region; 6 K more, shared, for coefficients from "
-    "memory (no source)",
+    "common practice, no source: 8 K in the region; 6 K more, shared, for coefficients from memory",
 )
 
 

@@ -13,11 +13,12 @@ _CONSTANT, _PER_HOUR, _PER_METRE, _MIDDLE_M = 1.32866, -0.005289, -0.001391, 449
 # The paper prints the factor's own standard uncertainty, which was not seen (common practice).
 _FACTOR_STD = 0.06
 
+# METHODS A8, A12.
 UNCERTAINTY = Uncertainty(
     8.0,
     4.0,
-    "common practice (METHODS A8, A12): 8 K in the region, or a factor uncertain by 0.06 if more; "
-    "shared part: a quarter of the variance, no source",
+    "common practice, no source: 8 K in the region, or a factor uncertain by 0.06 if more; "
+    "shared part: a quarter of the variance",
 )
 
 

@@ -1,0 +1,1 @@
+"""The correction methods judged: side by side, against measured temperatures, at the surface."""

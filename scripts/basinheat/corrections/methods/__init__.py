@@ -1,0 +1,1 @@
+"""One module per published correction, and what kinds of them have in common."""

@@ -1,0 +1,1 @@
+"""Conductive recovery: simulated response, cooling law learned in the basin, unknown times."""
