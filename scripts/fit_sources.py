@@ -9,6 +9,7 @@ fit = heatflow.fit(
     tables.Resistances.load(snakemake.input.resistances),
     tables.Sources.load_all(snakemake.input.sources),
     tables.Wells.load(snakemake.input.wells),
+    published=tables.HeatFlowPoints.load(snakemake.input.published),
     pinned=documents.load(snakemake.input.pinned),
     **snakemake.params.options,
 )

@@ -2,12 +2,15 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterator
 from typing import Any
 
 import pandas as pd
 
 from basinheat.geostat.engines import engine_class
 from basinheat.geostat.models import Covariance
+
+PART = 1_048_576  # cells kriged and written at a time: a row group of Parquet
 
 
 def krige_heat_flow(
@@ -38,8 +41,22 @@ def krige_heat_flow(
     DataFrame
         HeatFlowGrid.
     """
+    parts = krige_heat_flow_parts(points, information, fitted, cells, engine, trend)
+    return pd.concat(parts, ignore_index=True)
+
+
+def krige_heat_flow_parts(
+    points: pd.DataFrame,
+    information: pd.DataFrame,
+    fitted: dict[str, Any],
+    cells: pd.DataFrame,
+    engine: str = "auto",
+    trend: str = "none",
+) -> Iterator[pd.DataFrame]:
+    """Krige as ``krige_heat_flow``, and yield the rows of a million cells at a time."""
     solved = heat_flow_engine(points, information, fitted, engine, trend)
-    return predict_heat_flow(solved, information["source"], cells)
+    for start in range(0, max(len(cells), 1), PART):
+        yield predict_heat_flow(solved, information["source"], cells.iloc[start : start + PART])
 
 
 def predict_heat_flow(engine: Any, sources: pd.Series, cells: pd.DataFrame) -> pd.DataFrame:
@@ -66,7 +83,7 @@ def heat_flow_engine(
 ) -> Any:
     """Return the kriging engine of heat flow, solved for the wells' values."""
     names = information["source"]
-    return engine_class(engine)(
+    return engine_class(engine, len(points))(
         points[["easting_m", "northing_m"]].to_numpy(),
         Covariance.from_dict(fitted["covariance"]),
         points["value_std"].to_numpy() ** 2,

@@ -10,7 +10,7 @@ import pandas as pd
 from numpy.typing import NDArray
 
 from basinheat.geostat import variogram
-from basinheat.geostat.engine_global import GlobalKriging
+from basinheat.geostat.engines import engine_class
 from basinheat.geostat.models import Covariance
 from basinheat.geostat.variogram import Experimental
 from basinheat.settings.heat import BelowLayers
@@ -125,7 +125,8 @@ class _Interval:
 
     def left_out(self, covariance: Covariance) -> Floats:
         """Standardised leave-one-out errors."""
-        engine = GlobalKriging(self.xy, covariance, self.error).solve(self.value)
+        engine = engine_class("auto", len(self.xy))(self.xy, covariance, self.error)
+        engine = engine.solve(self.value)
         predicted, variance = engine.leave_one_out()
         return (predicted - self.value) / np.sqrt(variance)
 
@@ -261,7 +262,7 @@ def _krige_interval(
     frame: pd.DataFrame, covariance: Covariance, xy: Floats, names: list[str]
 ) -> tuple[Floats, Floats]:
     """Krige ln k and everything that rides on its weights, for one interval."""
-    engine = GlobalKriging(
+    engine = engine_class("auto", len(frame))(
         frame[["easting_m", "northing_m"]].to_numpy(),
         covariance,
         frame["value_std"].to_numpy() ** 2,

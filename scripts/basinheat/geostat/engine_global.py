@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Callable
 from dataclasses import replace
 
 import numpy as np
@@ -13,12 +13,15 @@ from basinheat.geostat.drift import Drift
 from basinheat.geostat.gls import NotPositiveDefiniteError, deviance, factorise, left_out
 from basinheat.geostat.models import Covariance
 from basinheat.geostat.prediction import Prediction, Target, row_blocks
-from basinheat.geostat.threads import one_blas_thread
-from basinheat.geostat.tiles import NEAREST, local_variance
+from basinheat.geostat.threads import one_blas_thread, run_tasks
 
 Array = NDArray[np.float64]
+Part = Callable[[slice], tuple[Array, Array]]  # covariances of some cells with the data, and drift
 
 ALL_DATA = 600  # data up to which the variance rests on all of them: beyond, n^2 a place is slow
+NEAREST = 64  # data that every place then sees at least
+THREADED = 20_000_000_000  # data^2 x places from which a second block in memory is worth it
+COMPILED = 1_000_000_000  # data x places from which compiled loops repay loading the compiler
 
 
 class GlobalKriging:
@@ -73,6 +76,7 @@ class GlobalKriging:
     ) -> None:
         self._xy = as_places(xy)
         self._covariance = covariance
+        self._trend = trend
         self._modes = Modes.of(len(self._xy), loadings, prior_mean, prior_covariance)
         self._drift, drift_matrix = Drift.of(self._xy, trend)
         self._drift_matrix = drift_matrix
@@ -108,6 +112,7 @@ class GlobalKriging:
         block: int | None = None,
         target: Target = "point",
         nearest: int | None = None,
+        apart_m: float | None = None,
     ) -> Prediction:
         """Predict the field at places.
 
@@ -122,8 +127,11 @@ class GlobalKriging:
         target : {"point", "signal"}
             With the micro-scale nugget in the variance, or the smooth part only.
         nearest : int, optional
-            Take the variance from the nearest data (``tiles``), so many at least; default all
-            data up to 600, then the nearest. Mean and sources always rest on all data.
+            Take the variance from the data around each place, so many at least, as
+            ``TileKriging`` does; by default from all data up to 600 of them. Mean and sources
+            always rest on all data.
+        apart_m : float, m, optional
+            Taken for ``TileKriging``'s sake; nothing here depends on it.
 
         Returns
         -------
@@ -131,32 +139,44 @@ class GlobalKriging:
             The mean by dual weights, the variance by triangular solves. At a datum's place the
             datum is filtered: its micro-scale part is not passed on (see ``at_data``).
         """
+        del apart_m
         places = as_places(xy0, "a cell")
         drift = self._drift.matrix(places, drift0)
-        parts = (
-            (self._covariance.between(places[rows], self._xy), drift[rows])
-            for rows in row_blocks(len(places), len(self._xy), block)
-        )
+
+        def part(rows: slice) -> tuple[Array, Array]:
+            return self._covariance.between(places[rows], self._xy), drift[rows]
+
         micro = self._covariance.nugget if target == "point" else 0.0
         if nearest is None:
             nearest = 0 if len(self._xy) <= ALL_DATA else NEAREST
         if not nearest:
-            return self._predict(parts, len(places), self._covariance.sill + micro)
-        prediction = self._predict(parts, len(places), None)
-        return replace(prediction, variance=micro + self._near(prediction, places, drift, nearest))
+            return self._predict(part, len(places), block, self._covariance.sill + micro)
+        if len(places) * len(self._xy) < COMPILED:
+            prediction = self._predict(part, len(places), block, None)
+        else:
+            prediction = self._predict_compiled(places, drift)
+        return replace(prediction, variance=micro + self._near(places, drift0, nearest))
 
-    def _near(self, prediction: Prediction, places: Array, drift: Array, nearest: int) -> Array:
-        """Variance from the nearest data, and what the sources, known from all data, add to it."""
-        local = local_variance(
-            *(self._xy, self._covariance, self._noise, self._drift_matrix),
-            *(places, drift, nearest),
+    def _predict_compiled(self, places: Array, drift: Array) -> Prediction:
+        """Predict as ``_predict`` without variance, and without a block of data and places."""
+        from basinheat.geostat.dual_kernel import covariance_times
+
+        self._need_values()
+        duals = np.column_stack([self._dual, self._factor.unwhiten(self._shared)])
+        told = covariance_times(self._covariance, places, self._xy, duals)
+        cross = -(drift @ self._shared_beta + told[:, 1:])
+        return Prediction(drift @ self._beta + told[:, 0], np.zeros(len(places)), cross)
+
+    def _near(self, places: Array, drift0: ArrayLike | None, nearest: int) -> Array:
+        """Return the variance as the data around each tile of places tell it."""
+        from basinheat.geostat.engine_tiles import TileKriging
+
+        tiles = TileKriging(
+            *(self._xy, self._covariance, self._noise - self._covariance.nugget, self._trend),
+            *(self._modes.loadings, self._modes.mean, self._modes.covariance),
+            nearest=nearest,
         )
-        if not prediction.cross.shape[1]:
-            return local
-        _, posterior = self.amplitudes()
-        # a source that is known exactly has no variance to share out
-        carried = prediction.cross @ np.linalg.pinv(posterior, hermitian=True)
-        return local + np.einsum("ij,ij->i", prediction.cross, carried)
+        return tiles.solve(self._need_values()).predict(places, drift0, target="signal").variance
 
     @one_blas_thread
     def at_data(self, block: int | None = None) -> Prediction:
@@ -170,7 +190,7 @@ class GlobalKriging:
 
         n = len(self._xy)
         own = self._covariance.sill + self._covariance.nugget
-        return self._predict((part(rows) for rows in row_blocks(n, n, block)), n, own)
+        return self._predict(part, n, block, own)
 
     def amplitudes(self) -> tuple[Array, Array]:
         """Return the posterior mean (m,) and covariance (m, m) of the shared amplitudes."""
@@ -256,26 +276,42 @@ class GlobalKriging:
             raise ValueError("call solve(values) first")
         return self._values
 
-    def _predict(
-        self, parts: Iterator[tuple[Array, Array]], cells: int, own: float | None
-    ) -> Prediction:
+    def _predict(self, part: Part, cells: int, block: int | None, own: float | None) -> Prediction:
         """Predict block by block; without ``own``, the prior variance, the variance stays 0."""
         self._need_values()
         m = self._modes.mean.size
-        mean, variance, cross = np.empty(cells), np.zeros(cells), np.empty((cells, m))
+        told = Prediction(np.empty(cells), np.zeros(cells), np.empty((cells, m)))
         duals = np.column_stack([self._dual, self._factor.unwhiten(self._shared)])
-        start = 0
-        for covariance, drift in parts:
-            rows = slice(start, start := start + len(covariance))
-            told = covariance @ duals
-            mean[rows] = drift @ self._beta + told[:, 0]
-            # the loadings (times S) carried with the same weights as the values
-            cross[rows] = -(drift @ self._shared_beta + told[:, 1:])
-            if own is None:
-                continue
-            # C order of (cells, n) is Fortran order of its transpose: solved in place
-            white = self._factor.whiten(covariance.T, overwrite=True)
-            explained = np.einsum("ij,ij->j", white, white)
-            open_drift = self._factor.solve_triangle(drift.T) - self._factor.basis.T @ white
-            variance[rows] = own - explained + np.einsum("ij,ij->j", open_drift, open_drift)
-        return Prediction(mean, np.maximum(variance, 0.0), cross)
+        blocks = list(row_blocks(cells, len(self._xy), block))
+
+        def some(first: int, step: int) -> None:
+            for rows in blocks[first::step]:
+                self._predict_block(rows, *part(rows), duals, own, told)
+
+        if cells * len(self._xy) ** 2 < THREADED:
+            some(0, 1)
+        else:
+            run_tasks(some, len(blocks))
+        return replace(told, variance=np.maximum(told.variance, 0.0))
+
+    def _predict_block(
+        self,
+        rows: slice,
+        covariance: Array,
+        drift: Array,
+        duals: Array,
+        own: float | None,
+        told: Prediction,
+    ) -> None:
+        """Write what is told of some cells; their covariance with the data is overwritten."""
+        sums = covariance @ duals
+        told.mean[rows] = drift @ self._beta + sums[:, 0]
+        # the loadings (times S) carried with the same weights as the values
+        told.cross[rows] = -(drift @ self._shared_beta + sums[:, 1:])
+        if own is None:
+            return
+        # C order of (cells, n) is Fortran order of its transpose: solved in place
+        white = self._factor.whiten(covariance.T, overwrite=True)
+        explained = np.einsum("ij,ij->j", white, white)
+        open_drift = self._factor.solve_triangle(drift.T) - self._factor.basis.T @ white
+        told.variance[rows] = own - explained + np.einsum("ij,ij->j", open_drift, open_drift)

@@ -99,9 +99,10 @@ class PyKrigeKriging:
         drift0: None = None,
         block: int | None = None,
         target: Target = "point",
+        apart_m: float | None = None,
     ) -> Prediction:
         """Predict the field at places; parameters and result as ``GlobalKriging.predict``."""
-        del drift0
+        del drift0, apart_m
         places = self._covariance.isotropic(as_places(xy0, "a cell"))
         mean, variance = self._krige(self._expected, places, block)
         if target == "signal":

@@ -14,12 +14,14 @@ from basinheat.errors import UserError
 
 Array = NDArray[np.float64]
 
-# Practical range (correlation 0.05) over the natural one: e^(-h/a), e^(-(h/a)^2) and
-# (1 + h/a) e^(-h/a) fall to 0.05 there; spherical and cubic end at their range.
+# Practical range (correlation 0.05) over the natural one: e^(-h/a), e^(-(h/a)^2),
+# (1 + h/a) e^(-h/a) and (1 + h/a + (h/a)^2 / 3) e^(-h/a) fall to 0.05 there; spherical and cubic
+# end at their range.
 PRACTICAL_OVER_NATURAL = {
     "exponential": float(np.log(20.0)),
     "gaussian": float(np.sqrt(np.log(20.0))),
     "matern15": 4.743864518390591,  # root of (1 + x) e^(-x) = 0.05
+    "matern25": 5.918649346310188,  # root of (1 + x + x^2 / 3) e^(-x) = 0.05
     "spherical": 1.0,
     "cubic": 1.0,
 }
@@ -39,6 +41,16 @@ def _gaussian(x: Array) -> Array:
 def _matern15(x: Array) -> Array:
     decay = np.exp(-x)
     x += 1.0
+    x *= decay
+    return x
+
+
+def _matern25(x: Array) -> Array:
+    decay = np.exp(-x)
+    square = x * x
+    square /= 3.0
+    x += 1.0
+    x += square
     x *= decay
     return x
 
@@ -67,6 +79,7 @@ _OVERWRITING: dict[str, Callable[[Array], Array]] = {
     "exponential": _exponential,
     "gaussian": _gaussian,
     "matern15": _matern15,
+    "matern25": _matern25,
     "spherical": _spherical,
     "cubic": _cubic,
 }
@@ -86,8 +99,8 @@ def correlation(h_over_range: ArrayLike, model: str) -> Array:
     Returns
     -------
     array, same shape
-        Correlation: 1 at 0; 0.05 at 1 for exponential, gaussian, matern15, and 0 at 1 for
-        spherical, cubic.
+        Correlation: 1 at 0; 0.05 at 1 for exponential, gaussian, matern15, matern25, and 0 at 1
+        for spherical, cubic.
 
     References
     ----------
@@ -151,7 +164,7 @@ class Covariance:
     def from_natural(
         cls, model: str, sill: float, natural_range_m: float, nugget: float = 0.0, **axes: float
     ) -> Covariance:
-        """Make a model from the natural range a: e^(-h/a), e^(-(h/a)^2), (1 + h/a) e^(-h/a)."""
+        """Make a model from the natural range a: e^(-h/a), e^(-(h/a)^2), (1 + h/a) e^(-h/a) ..."""
         return cls(model, sill, natural_range_m * PRACTICAL_OVER_NATURAL[model], nugget, **axes)
 
     @classmethod

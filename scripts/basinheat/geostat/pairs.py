@@ -14,6 +14,7 @@ Array = NDArray[np.float64]
 Table = tuple[Array, Array, Array, Array]
 
 _PAIRS_AT_A_TIME = 1_000_000
+_COMPILED = 20_000_000  # pairs from which a compiled loop repays loading the compiler
 _FEWEST_PAIRS = 30  # Journel & Huijbregts (1978), Mining Geostatistics, section III.A
 
 
@@ -47,6 +48,11 @@ def accumulate(table: Table, edges: Array, root: bool) -> tuple[Array, Array, Ar
 
     The core is the square of the difference, or with ``root`` the root of its absolute value.
     """
+    if len(table[0]) ** 2 // 2 > _COMPILED:
+        from basinheat.geostat.pair_kernel import sum_pairs
+
+        pairs, distance, core, known = sum_pairs(*table, edges, root)
+        return pairs, distance, core, known
     total = np.zeros((4, len(edges) - 1))
     for lag, h, difference, known in pairs_within(table, edges):
         core = np.sqrt(difference) if root else difference**2

@@ -6,17 +6,34 @@ import numpy as np
 import pandas as pd
 
 from basinheat.heatflow.joint import Basin
-from basinheat.tables.sources import LITHOLOGY, PRODUCTION, ROCK, SURFACE
+from basinheat.heatflow.points import Points
+from basinheat.tables.sources import LITHOLOGY, PRODUCTION, PUBLISHED, ROCK, SURFACE
 
 
-def with_surface(sources: pd.DataFrame, std_k: float) -> pd.DataFrame:
-    """Order the sources: of temperature with the surface, ln k, other rock, heat production."""
-    surface = pd.DataFrame({"source": [SURFACE], "prior_std": [std_k], "unit": ["K"]})
-    sources = pd.concat([sources[sources["source"] != SURFACE], surface])
+def in_order(
+    sources: pd.DataFrame, surface_std_k: float, published_share: float | None
+) -> pd.DataFrame:
+    """Order the sources, with those of the surface and, where there is any, published heat flow.
+
+    Temperature comes first, then ln k, other rock, heat production, published heat flow.
+    """
+    more = {"source": [SURFACE], "prior_std": [surface_std_k], "unit": ["K"]}
+    if published_share is not None:
+        more = {
+            "source": [SURFACE, PUBLISHED],
+            "prior_std": [surface_std_k, published_share],
+            "unit": ["K", "1"],
+        }
+    sources = pd.concat([sources[sources["source"] != SURFACE], pd.DataFrame(more)])
     name = sources["source"]
     rank = np.select(
-        [name == PRODUCTION, name.str.startswith(ROCK), name.str.startswith(LITHOLOGY)],
-        [3, 2, 1],
+        [
+            name == PUBLISHED,
+            name == PRODUCTION,
+            name.str.startswith(ROCK),
+            name.str.startswith(LITHOLOGY),
+        ],
+        [4, 3, 2, 1],
         0,
     )
     order = np.lexsort([name.to_numpy(str), rank])
@@ -29,8 +46,9 @@ def starts(sources: pd.DataFrame, prefix: str) -> np.ndarray:
 
 
 def of_temperature(sources: pd.DataFrame) -> np.ndarray:
-    """Mark the sources that act on temperatures, and not on rock."""
-    return ~(starts(sources, LITHOLOGY) | starts(sources, ROCK))
+    """Mark the sources that act on temperatures."""
+    rock = starts(sources, LITHOLOGY) | starts(sources, ROCK)
+    return ~rock & (sources["source"] != PUBLISHED).to_numpy()
 
 
 def loadings_on(estimates: pd.DataFrame, names: pd.Series) -> np.ndarray:
@@ -40,7 +58,11 @@ def loadings_on(estimates: pd.DataFrame, names: pd.Series) -> np.ndarray:
 
 
 def arrange(
-    used: pd.DataFrame, rock: pd.DataFrame, sources: pd.DataFrame, wells: pd.DataFrame
+    used: pd.DataFrame,
+    rock: pd.DataFrame,
+    sources: pd.DataFrame,
+    wells: pd.DataFrame,
+    published: pd.DataFrame,
 ) -> tuple[Basin, list[str]]:
     """Arrange the tables as the arrays of the fit."""
     well = pd.Index(wells["well"]).get_indexer(used["well"])
@@ -73,4 +95,10 @@ def arrange(
             temperature_sources["source"] == SURFACE, temperature_sources["prior_std"], 0.0
         ),
         production_std=sources["prior_std"][sources["source"] == PRODUCTION].to_numpy(),
+        points=Points(
+            xy=published[["easting_m", "northing_m"]].to_numpy(float),
+            heat_flow=published["heat_flow_mw_m2"].to_numpy(float),
+            std=published["heat_flow_std_mw_m2"].to_numpy(float),
+            shared_share=sources["prior_std"][sources["source"] == PUBLISHED].to_numpy(),
+        ),
     ), classes.tolist()

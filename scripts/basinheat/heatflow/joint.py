@@ -13,6 +13,7 @@ from basinheat.geostat.gls import NotPositiveDefiniteError, deviance, factorise
 from basinheat.geostat.likelihood import search
 from basinheat.geostat.models import Covariance
 from basinheat.geostat.thinning import spread
+from basinheat.heatflow.points import Points, beside_wells
 from basinheat.heatflow.reduction import (
     Column,
     Floats,
@@ -41,7 +42,8 @@ class Basin:
     ``change`` (n, v) m2 K/mW: of resistance per unit amplitude of v rock sources. ``ln_std`` (k,)
     sigma of ln k of each lithology; ``surface_shift`` (m,) K: change of the surface temperature per
     unit amplitude of each temperature source; ``production_std`` (p,): sigma of the level of heat
-    production, p 0 or 1. Amplitudes are ordered m, k, v, p.
+    production, p 0 or 1; ``points``: published heat flow, with s shared amplitudes. Amplitudes are
+    ordered m, k, v, p, s.
     """
 
     well: Ints
@@ -62,6 +64,18 @@ class Basin:
     ln_std: Floats
     surface_shift: Floats
     production_std: Floats
+    points: Points
+
+    @property
+    def places(self) -> Floats:
+        """Return where the data of the map lie: wells, then points, (w + p, 2)."""
+        return np.vstack([self.xy, self.points.xy])
+
+    def thinned(self, most: int) -> Basin:
+        """Return the rows of at most so many wells and points, evenly spread."""
+        kept = spread(self.places, most)
+        basin = self.of_wells(kept[kept < len(self.xy)])
+        return replace(basin, points=self.points.take(kept[kept >= len(self.xy)] - len(self.xy)))
 
     def of_wells(self, wells: Ints) -> Basin:
         """Return the rows of some wells, renumbered."""
@@ -71,7 +85,7 @@ class Basin:
         per_row = {
             name: getattr(self, name)[rows]
             for name in self.__dataclass_fields__
-            if name not in ("xy", "ln_std", "surface_shift", "production_std")
+            if name not in ("xy", "ln_std", "surface_shift", "production_std", "points")
         }
         per_row["well"] = number[per_row["well"]]
         return replace(self, xy=self.xy[wells], **per_row)
@@ -119,6 +133,7 @@ def column_of(basin: Basin, rock: Floats, regional: float, scales: Floats) -> Co
                 conductivity,
                 (regional * total - below)[:, None] * relative,
                 -np.outer(below, basin.production_std),
+                np.zeros((len(below), len(basin.points.shared_share))),
             ]
         ),
         variance=basin.std**2 * scale,
@@ -130,6 +145,12 @@ def column_of(basin: Basin, rock: Floats, regional: float, scales: Floats) -> Co
             ]
         ),
     )
+
+
+def reduce(basin: Basin, rock: Floats, regional: float, scales: Floats) -> Reduced:
+    """Return the wells reduced about rock amplitudes, (k + v,), and the points beside them."""
+    wells = reduce_wells(column_of(basin, rock, regional, scales))
+    return beside_wells(wells, basin.points, regional)
 
 
 def fit_joint(
@@ -161,20 +182,18 @@ def fit_joint(
     """
     n_temperature, n_rock = basin.loadings.shape[1], len(basin.ln_std) + basin.change.shape[1]
     place = slice(n_temperature, n_temperature + n_rock)
-    sample = basin.of_wells(spread(basin.xy, WELLS_FITTED))
-    fitted = _Search(sample, models, pinned, regional, trend)
+    fitted = _Search(basin.thinned(WELLS_FITTED), models, pinned, regional, trend)
     rock = np.zeros(n_rock)
     for turn in range(TURNS):
-        offset = np.concatenate(
-            [np.zeros(n_temperature), rock, np.zeros(len(basin.production_std))]
-        )
+        n_rest = len(basin.production_std) + len(basin.points.shared_share)
+        offset = np.concatenate([np.zeros(n_temperature), rock, np.zeros(n_rest)])
         if turn < TURNS - 1:
             fitted.run(rock, regional, -offset)
         covariance, scales = fitted.covariance(), fitted.scales()
-        reduced = reduce_wells(column_of(basin, rock, regional, scales))
+        reduced = reduce(basin, rock, regional, scales)
         mean_within, covariance_within, _ = amplitudes_within_wells(reduced, -offset)
         engine = GlobalKriging(
-            basin.xy,
+            basin.places,
             covariance,
             reduced.variance,
             trend=trend,
@@ -210,10 +229,10 @@ class _Search:
         trend: str,
     ) -> None:
         self.basin, self.models, self.pinned = basin, models, pinned
-        _, self.drift = Drift.of(basin.xy, trend)
-        places = basin.xy if pinned is None else pinned.isotropic(basin.xy)
+        _, self.drift = Drift.of(basin.places, trend)
+        places = basin.places if pinned is None else pinned.isotropic(basin.places)
         self.distance = cdist(places, places)
-        diagonal = max(float(np.hypot(*np.ptp(basin.xy, axis=0))), 1.0)
+        diagonal = max(float(np.hypot(*np.ptp(basin.places, axis=0))), 1.0)
         wells = [
             len(np.unique(basin.well[basin.scale_class == c]))
             for c in range(int(basin.scale_class.max()) + 1)
@@ -275,7 +294,7 @@ class _Search:
         self, at: Floats, model: str, rock: Floats, regional: float, prior_mean: Floats
     ) -> float:
         at = np.clip(at, self.low, self.high)
-        reduced = reduce_wells(column_of(self.basin, rock, regional, self.scales(at)))
+        reduced = reduce(self.basin, rock, regional, self.scales(at))
         mean, spread_, within = amplitudes_within_wells(reduced, prior_mean)
         covariance = self.covariance(at, model)
         matrix = covariance.at_distance(self.distance)

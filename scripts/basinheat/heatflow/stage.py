@@ -12,9 +12,9 @@ import pandas as pd
 from basinheat.errors import UserError
 from basinheat.geostat.models import Covariance
 from basinheat.geostat.variogram import experimental
-from basinheat.heatflow.arrange import arrange, loadings_on, of_temperature, starts, with_surface
+from basinheat.heatflow.arrange import arrange, in_order, loadings_on, of_temperature, starts
 from basinheat.heatflow.joint import Joint, fit_joint
-from basinheat.tables import Temperatures
+from basinheat.tables import HeatFlowPoints, Temperatures
 from basinheat.tables.sources import LITHOLOGY, PRODUCTION, ROCK
 
 log = logging.getLogger(__name__)
@@ -46,6 +46,8 @@ def fit(
     pinned: dict[str, Any] | None = None,
     holdout: tuple[str, ...] = (),
     trend: str = "none",
+    published: pd.DataFrame | None = None,
+    published_shared_share: float = 0.05,
 ) -> Fit:
     """Fit the covariance of heat flow and all shared sources; give what follows from it.
 
@@ -69,6 +71,10 @@ def fit(
         Wells that must not inform the fit.
     trend : {"none", "linear"}
         Drift of heat flow in x and y.
+    published : DataFrame, optional
+        Heat flow determined elsewhere, by the contract HeatFlowPoints.
+    published_shared_share : float
+        Share of its values that all of it may be off by alike.
 
     Raises
     ------
@@ -88,11 +94,14 @@ def fit(
             f"all {len(wells)} wells lie at one place, a map needs several. Check the columns of x "
             "and y in inputs.wells."
         )
-    sources = with_surface(sources, surface_shared_std_k)
+    published = HeatFlowPoints.empty() if published is None else published
+    published = published[~published["well"].isin(holdout)].sort_values("well", ignore_index=True)
+    share = published_shared_share if len(published) else None
+    sources = in_order(sources, surface_shared_std_k, share)
     order = np.argsort(estimates["well"].to_numpy()[kept], kind="stable")
     used = estimates[kept].iloc[order].reset_index(drop=True)
     rock = resistances[kept].iloc[order].reset_index(drop=True)
-    basin, classes = arrange(used, rock, sources, wells)
+    basin, classes = arrange(used, rock, sources, wells, published)
     if regional_mw_m2 is None:
         excess = basin.temperature - basin.surface + basin.radiogenic.sum(1)
         total = basin.resistance.sum(1) + basin.resistance_fixed
@@ -105,9 +114,10 @@ def fit(
         trend,
     )
     log.info(
-        "%d wells, %d temperatures: regional heat flow %.1f mW/m2, %s",
+        "%d wells, %d temperatures, %d published: regional heat flow %.1f mW/m2, %s",
         len(wells),
         len(used),
+        len(published),
         joint.regional,
         joint.covariance,
     )
@@ -116,9 +126,9 @@ def fit(
         source_covariance=_matrix(sources, joint.mean, joint.posterior),
         source_information=_matrix(sources, joint.mean_within, joint.covariance_within),
         temperatures=_temperatures(joint, estimates, sources, classes),
-        heat_flow=_heat_flow(joint, used, rock, sources, wells),
-        map_points=_map_points(joint, sources, wells),
-        variogram=_variogram(joint, classes, basin.xy),
+        heat_flow=_heat_flow(joint, used, rock, sources, wells, published),
+        map_points=_map_points(joint, sources, pd.concat([wells, published])),
+        variogram=_variogram(joint, classes, basin.places),
     )
 
 
@@ -162,8 +172,9 @@ def _heat_flow(
     rock: pd.DataFrame,
     sources: pd.DataFrame,
     wells: pd.DataFrame,
+    published: pd.DataFrame,
 ) -> pd.DataFrame:
-    """Heat flow of each well, sources at their posterior mean."""
+    """Heat flow of each well, sources at their posterior mean; then what was published."""
     reduced = joint.reduced
     left = joint.mean - joint.offset
     shared = np.einsum("ij,jk,ik->i", reduced.loadings, joint.posterior, reduced.loadings)
@@ -181,12 +192,14 @@ def _heat_flow(
     deepest = deepest.reindex(wells["well"]).reset_index()
     n_points = rows.groupby("well").size().reindex(wells["well"]).to_numpy()
     several = np.where(n_points > 1, "several temperatures", "one temperature")
-    return pd.DataFrame(
+    value = reduced.heat_flow - reduced.loadings @ left
+    n = len(wells)
+    own = pd.DataFrame(
         {
             "well": wells["well"],
-            "heat_flow_mw_m2": reduced.heat_flow - reduced.loadings @ left,
-            "heat_flow_std_mw_m2": np.sqrt(reduced.variance),
-            "heat_flow_shared_std_mw_m2": np.sqrt(shared),
+            "heat_flow_mw_m2": value[:n],
+            "heat_flow_std_mw_m2": np.sqrt(reduced.variance[:n]),
+            "heat_flow_shared_std_mw_m2": np.sqrt(shared[:n]),
             "conductivity_w_mk": deepest["conductivity_w_mk"],
             "conductivity_std_w_mk": deepest["conductivity_w_mk"] * deepest["ln_std"],
             "n_points": n_points,
@@ -195,6 +208,21 @@ def _heat_flow(
             "effects": "none",
         }
     )
+    given = pd.DataFrame(
+        {
+            "well": published["well"],
+            "heat_flow_mw_m2": value[n:],
+            "heat_flow_std_mw_m2": np.sqrt(reduced.variance[n:]),
+            "heat_flow_shared_std_mw_m2": np.sqrt(shared[n:]),
+            "conductivity_w_mk": published["conductivity_w_mk"],
+            "conductivity_std_w_mk": np.nan,
+            "n_points": 0,
+            "method": "published",
+            "quality": published["quality"],
+            "effects": "none",
+        }
+    )
+    return pd.concat([own, given], ignore_index=True) if len(given) else own
 
 
 def _resistance(
@@ -219,15 +247,16 @@ def _resistance(
     return resistance, np.sqrt(variance)
 
 
-def _map_points(joint: Joint, sources: pd.DataFrame, wells: pd.DataFrame) -> pd.DataFrame:
+def _map_points(joint: Joint, sources: pd.DataFrame, places: pd.DataFrame) -> pd.DataFrame:
+    places = places.reset_index(drop=True)
     loadings = {
         f"loading_{name}": joint.reduced.loadings[:, i] for i, name in enumerate(sources["source"])
     }
     return pd.DataFrame(
         {
-            "well": wells["well"],
-            "easting_m": wells["easting_m"],
-            "northing_m": wells["northing_m"],
+            "well": places["well"],
+            "easting_m": places["easting_m"],
+            "northing_m": places["northing_m"],
             "value": joint.reduced.heat_flow,
             "value_std": np.sqrt(joint.reduced.variance),
             **loadings,
