@@ -15,7 +15,9 @@ from basinheat.conductivity.conditions import LAW_NAMES
 from basinheat.errors import UserError
 
 Array = NDArray[np.float64]
-OWN = Path(__file__).with_name("catalogue.csv")
+FOLDER = Path(__file__).with_name("catalogues")
+DEFAULT = "beardsmore2001"
+OWN = FOLDER / f"{DEFAULT}.csv"
 
 _RANGES = {
     "conductivity_w_mk": (0.02, 20.0),
@@ -33,7 +35,9 @@ class Catalogue:
 
     ``conductivity_w_mk`` is the matrix at 25 degC (the whole rock where ``porosity_surface`` is
     0), ``std_ln`` the standard deviation of ln k common to a basin, ``law`` the place of the
-    temperature law in ``conditions.LAW_NAMES``, ``aliases`` other names: place of the rock.
+    temperature law in ``conditions.LAW_NAMES``, ``aliases`` other names: place of the rock,
+    ``anisotropy`` k along over k across the bedding (``conductivity_w_mk`` is that across),
+    ``sedimentary`` whether pressure counts, ``made`` the rocks that only the config describes.
     """
 
     names: tuple[str, ...]
@@ -45,6 +49,9 @@ class Catalogue:
     heat_production_w_m3: Array
     law: NDArray[np.int64]
     sources: tuple[str, ...]
+    anisotropy: Array
+    sedimentary: NDArray[np.bool_]
+    made: frozenset[str] = frozenset()
 
     def places(self, names: Iterable[str], mapping: Mapping[str, str]) -> dict[str, int]:
         """Return the place of each name, by the mapping, the catalogue's names and aliases.
@@ -89,6 +96,10 @@ class Catalogue:
         known = self.aliases.keys() | {plain(name) for name in mapping}
         return {name: self._near(name) for name in sorted(set(names)) if plain(name) not in known}
 
+    def hint(self, name: str) -> str:
+        """Return that a name is not known, and the rock whose name is spelled most like it."""
+        return f"is not in the catalogue; {self._near(name)}"
+
     def _near(self, name: str) -> str:
         close = difflib.get_close_matches(plain(name), sorted(self.aliases), 1, 0.5)
         if close:
@@ -107,15 +118,30 @@ def plain(name: str) -> str:
     return "_".join(str(name).lower().replace("-", " ").replace("_", " ").split())
 
 
-def load(path: str | Path | None = None) -> Catalogue:
-    """Read a catalogue; default the one that comes with the program.
+def set_names() -> tuple[str, ...]:
+    """Return the names of the sets that come with the program."""
+    return tuple(sorted(path.stem for path in FOLDER.glob("*.csv")))
+
+
+def set_file(source: str | Path) -> Path:
+    """Return the file of a named set, or the path itself."""
+    return FOLDER / f"{source}.csv" if str(source) in set_names() else Path(source)
+
+
+def load(source: str | Path | None = None) -> Catalogue:
+    """Read a catalogue; default the set ``DEFAULT``.
+
+    Parameters
+    ----------
+    source : str or Path, optional
+        Name of a set that comes with the program, or a CSV file of the same columns.
 
     Raises
     ------
     UserError
         Every fault, with its line.
     """
-    path = OWN if path is None else Path(path)
+    path = set_file(DEFAULT if source is None else source)
     try:
         with path.open(encoding="utf-8-sig", newline="") as file:
             reader = csv.DictReader(file)
@@ -143,6 +169,8 @@ def load(path: str | Path | None = None) -> Catalogue:
         heat_production_w_m3=column["heat_production_uw_m3"] * 1e-6,
         law=np.array([LAW_NAMES.index(row["law"].strip()) for _, row in rows]),
         sources=tuple((row["source"] or "").strip() for _, row in rows),
+        anisotropy=np.ones(len(rows)),
+        sedimentary=np.array([row["law"].strip() == "vosteen2003_sed" for _, row in rows]),
     )
 
 

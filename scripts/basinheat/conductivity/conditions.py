@@ -86,12 +86,68 @@ def sekiguchi_waples(conductivity_25: ArrayLike, temperature_degc: ArrayLike) ->
     return (k25 - 1.84) / at_25 * (1.0 / (t + 273.15) - 0.00068) + 1.84
 
 
+def sekiguchi1984(conductivity_25: ArrayLike, temperature_degc: ArrayLike) -> Array:
+    """Return the conductivity by k = Tm T0 / (Tm - T0) (k0 - kinf) (1/T - 1/Tm) + kinf, in kelvin.
+
+    Parameters and return as for :func:`vosteen2003_sed`; Tm = 1473 K, kinf = 1.8418 W/(m K), and
+    T0 any temperature at which k is known, here 25 degC.
+
+    References
+    ----------
+    Sekiguchi (1984), Tectonophysics 103; constants from memory.
+    """
+    k25, t = np.asarray(conductivity_25, float), np.asarray(temperature_degc, float)
+    at_25 = 1.0 / (REFERENCE_DEGC + 273.15) - 1.0 / 1473.0
+    return (k25 - 1.8418) / at_25 * (1.0 / (t + 273.15) - 1.0 / 1473.0) + 1.8418
+
+
+def chapman1984(conductivity_25: ArrayLike, temperature_degc: ArrayLike) -> Array:
+    """Return the conductivity by k = k20 293 / (273 + T): the strongest fall of all laws.
+
+    Parameters and return as for :func:`vosteen2003_sed`.
+
+    References
+    ----------
+    Chapman, Keho, Bauer & Picard (1984), Geophysics 49, 453-466; from memory.
+    """
+    k, t = np.asarray(conductivity_25, float), np.asarray(temperature_degc, float)
+    return k * (273.0 + REFERENCE_DEGC) / (273.0 + t)
+
+
+def sass1992(conductivity_25: ArrayLike, temperature_degc: ArrayLike) -> Array:
+    """Return the conductivity by k = k0 / (1.007 + T (0.0036 - 0.0072/k0)).
+
+    Parameters and return as for :func:`vosteen2003_sed`, and k0 too is the exact inverse.
+
+    References
+    ----------
+    Sass et al. (1992), J. Geophys. Res. 97, 5017-5030; from memory.
+    """
+    return _vosteen(conductivity_25, temperature_degc, 0.0036, 0.0072, 1.007)
+
+
+def kola2008(conductivity_25: ArrayLike, temperature_degc: ArrayLike) -> Array:
+    """Return the conductivity of crystalline rock: k = k0 / (1.001 + T (a - b/k0)).
+
+    As :func:`vosteen2003_sed`, with a = 0.0013, b = 0.0029.
+
+    References
+    ----------
+    Mottaghy et al. (2008), Int. J. Earth Sci. 97, 435-442; coefficients read in open code.
+    """
+    return _vosteen(conductivity_25, temperature_degc, 0.0013, 0.0029, 1.001)
+
+
 LAWS: dict[str, Callable[[ArrayLike, ArrayLike], Array]] = {
     "none": none,
     "vosteen2003_sed": vosteen2003_sed,
     "vosteen2003_cryst": vosteen2003_cryst,
     "halite": halite,
     "sekiguchi_waples": sekiguchi_waples,
+    "sekiguchi1984": sekiguchi1984,
+    "chapman1984": chapman1984,
+    "sass1992": sass1992,
+    "kola2008": kola2008,
 }
 LAW_NAMES = tuple(LAWS)
 
@@ -155,13 +211,67 @@ def water(temperature_degc: ArrayLike) -> Array:
     )
 
 
-def _vosteen(conductivity_25: ArrayLike, temperature_degc: ArrayLike, a: float, b: float) -> Array:
+def at_pressure(conductivity: ArrayLike, pressure_mpa: ArrayLike) -> Array:
+    """Return conductivity under pressure: (1.095 k - 0.172) p^(0.0088 k - 0.0067).
+
+    Parameters
+    ----------
+    conductivity : array_like, W/(m K)
+        Under no load, 0.5 to 6.
+    pressure_mpa : array_like, MPa
+        Below 0.1 (the air's) taken as 0.1.
+
+    Returns
+    -------
+    ndarray, W/(m K)
+        Never less than without load.
+
+    References
+    ----------
+    Fuchs & Förster (2014), Geophys. J. Int., saturated sandstone; coefficients from memory.
+
+    Examples
+    --------
+    >>> round(float(at_pressure(2.5, 30.0)), 4)
+    2.7025
+    """
+    k = np.asarray(conductivity, float)
+    p = np.maximum(np.asarray(pressure_mpa, float), 0.1)
+    return np.maximum((1.095 * k - 0.172) * p ** (0.0088 * k - 0.0067), k)
+
+
+def tilted(dip_deg: ArrayLike, anisotropy: ArrayLike) -> Array:
+    """Return vertical conductivity over that across the bedding: cos2 + a sin2.
+
+    Parameters
+    ----------
+    dip_deg : array_like, degrees
+        Of the bedding, 0 where it is flat.
+    anisotropy : array_like
+        Conductivity along over across the bedding.
+
+    Returns
+    -------
+    ndarray
+
+    Examples
+    --------
+    >>> round(float(1.6 * tilted(30.0, 2.4 / 1.6)), 6)
+    1.8
+    """
+    along = np.sin(np.radians(np.asarray(dip_deg, float))) ** 2
+    return 1.0 + (np.asarray(anisotropy, float) - 1.0) * along
+
+
+def _vosteen(
+    conductivity_25: ArrayLike, temperature_degc: ArrayLike, a: float, b: float, at_0: float = 0.99
+) -> Array:
     k25, t = np.asarray(conductivity_25, float), np.asarray(temperature_degc, float)
-    c = 0.99 + REFERENCE_DEGC * a
+    c = at_0 + REFERENCE_DEGC * a
     root = (c * k25) ** 2 - 4.0 * REFERENCE_DEGC * b * k25
-    known = root > 0.0  # below 0.34 (0.37) W/(m K) the law has no k0: k stays as it is
+    known = root > 0.0  # of very poor conductors the law has no k0: k stays as it is
     k0 = np.where(known, 0.5 * (c * k25 + np.sqrt(np.maximum(root, 0.0))), 1.0)
     slope = a - b / k0
-    at_25 = 0.99 + REFERENCE_DEGC * slope
-    below = np.maximum(0.99 + t * slope, np.where(slope < 0.0, at_25 / LARGEST_RISE, 0.0))
+    at_25 = at_0 + REFERENCE_DEGC * slope
+    below = np.maximum(at_0 + t * slope, np.where(slope < 0.0, at_25 / LARGEST_RISE, 0.0))
     return np.where(known, k25 * at_25 / np.where(known, below, 1.0), k25 + 0.0 * t)

@@ -97,3 +97,47 @@ def hashin_shtrikman(fractions: ArrayLike, conductivities: ArrayLike) -> tuple[A
         return 1.0 / np.sum(f / (k + 2.0 * reference), axis=-1) - 2.0 * reference[..., 0]
 
     return bound(k.min(-1, keepdims=True)), bound(k.max(-1, keepdims=True))
+
+
+def with_fluid(matrix: Array, fluid: Array, porosity: Array, rule: str) -> Array:
+    """Return the conductivity of rock from that of its matrix and of the fluid in its pores.
+
+    Parameters
+    ----------
+    matrix, fluid : ndarray, shape (n,), W/(m K)
+    porosity : ndarray, shape (n,)
+    rule : str
+        One of ``FLUID_RULES``.
+
+    Returns
+    -------
+    ndarray, shape (n,), W/(m K)
+
+    Examples
+    --------
+    >>> rock = [np.array([value]) for value in (4.0, 0.6, 0.2)]
+    >>> round(float(with_fluid(*rock, "hashin_shtrikman_lower")[0]), 3)
+    2.574
+    """
+    if rule == "geometric":
+        return matrix * (fluid / matrix) ** porosity
+    solid = 1.0 - porosity
+    if rule == "arithmetic":
+        return solid * matrix + porosity * fluid
+    if rule == "harmonic":
+        return 1.0 / (solid / matrix + porosity / fluid)
+    if rule == "square_root":
+        return (solid * np.sqrt(matrix) + porosity * np.sqrt(fluid)) ** 2
+    bound = np.maximum if rule == "hashin_shtrikman_upper" else np.minimum
+    more = 2.0 * bound(matrix, fluid)
+    return 1.0 / (solid / (matrix + more) + porosity / (fluid + more)) - more
+
+
+FLUID_RULES = (
+    "geometric",
+    "arithmetic",
+    "harmonic",
+    "square_root",
+    "hashin_shtrikman_upper",
+    "hashin_shtrikman_lower",
+)

@@ -7,20 +7,20 @@ import pandas as pd
 from numpy.typing import NDArray
 
 from basinheat.conductivity.catalogue import Catalogue
+from basinheat.conductivity.mixtures import UNKNOWN, Meaning, Vocabulary, load_formations
 from basinheat.errors import UserError
-from basinheat.rock.model import Beds, Lithologies
+from basinheat.rock.makeup import Beds, Lithologies, Mixtures
 from basinheat.rock.slabs import overlapping
 from basinheat.settings.heat import Conductivity
 from basinheat.tables import Rejected
 
 MEASURED_STD_LN = 0.10  # of a measured conductivity without stated uncertainty; common practice
 MOST_UNKNOWN = 0.2  # share of layers of unknown rock from which names are at fault, not rows
-DEEPEST_M = 15_000.0  # deeper than any hole
 
 
 def prepare_beds(
     layers: pd.DataFrame, wells: pd.DataFrame, catalogue: Catalogue, settings: Conductivity
-) -> tuple[Beds, Lithologies, int, pd.DataFrame]:
+) -> tuple[Beds, Mixtures, Lithologies, int, pd.DataFrame]:
     """Sort and check the layers and find their lithologies in the catalogue.
 
     Parameters
@@ -34,113 +34,157 @@ def prepare_beds(
     -------
     beds : Beds
         Wells as places in ``wells``.
+    mixtures : Mixtures
+        What the beds are made of.
     lithologies : Lithologies
         Those that occur, and the default one, in the catalogue's order.
     default : int
         Place of the default lithology among them.
     rejected : DataFrame
-        Table ``Rejected``: layers without thickness, above the surface, or over another.
+        Table ``Rejected``: layers of unknown rock.
 
     Raises
     ------
+    RuntimeError
+        When the layers are not as ``ingest`` leaves them: overlaps and thicknesses are its matter.
     UserError
         When so many layers have a lithology that the catalogue does not know that it must be a
         matter of names; a few such layers are refused and their depths filled from other wells.
     """
-    frame, refused = _sound(layers[layers["well"].isin(wells["well"])])
-    frame, strange = _known(frame, catalogue, settings)
-    refused = pd.concat([refused, strange], ignore_index=True)
-    names = frame["lithology"].fillna("").str.strip()
-    default = settings.default_lithology
-    places = catalogue.places([*names[names != ""], default], settings.lithologies)
-    used = sorted({*places.values()})
+    frame = _sound(layers[layers["well"].isin(wells["well"])])
+    words = Vocabulary(catalogue, settings.lithologies, load_formations(settings.formations))
+    frame, refused = _known(frame, words)
+    default = _one_rock(words, catalogue, settings.default_lithology, "default_lithology")
+    shares, kind = _shares(frame, words, catalogue, default, settings)
+    used = np.unique(np.r_[np.flatnonzero(shares.any(axis=0)), default])
     lithologies = Lithologies(
         names=tuple(catalogue.names[i] for i in used),
         conductivity_w_mk=catalogue.conductivity_w_mk[used],
-        std_ln=np.full(len(used), settings.std_ln) if settings.std_ln else catalogue.std_ln[used],
+        std_ln=catalogue.std_ln[used],
         porosity_surface=catalogue.porosity_surface[used],
         compaction_per_m=catalogue.compaction_per_m[used],
         heat_production_w_m3=catalogue.heat_production_w_m3[used],
         law=catalogue.law[used],
+        anisotropy=catalogue.anisotropy[used],
+        sedimentary=catalogue.sedimentary[used],
     )
-    place = {name: used.index(i) for name, i in places.items()}
     measured = frame["conductivity_w_mk"].where(frame["conductivity_w_mk"] > 0.0)
     std_ln = (frame["conductivity_std_w_mk"] / measured).fillna(MEASURED_STD_LN)
     beds = Beds(
         well=pd.Index(wells["well"]).get_indexer(frame["well"]),
         top_m=frame["top_m"].to_numpy(float),
         base_m=frame["base_m"].to_numpy(float),
-        lithology=names.map(lambda name: place[name or default]).to_numpy(np.int64),
+        mixture=kind,
         conductivity_w_mk=measured.to_numpy(float),
         std_ln=std_ln.to_numpy(float),
         porosity=frame["porosity"].where(frame["porosity"].between(0.0, 1.0)).to_numpy(float),
         heat_production_w_m3=frame["heat_production_uw_m3"].to_numpy(float) * 1e-6,
+        dip_deg=frame["dip_deg"].fillna(0.0).to_numpy(float),
     )
-    return _by_place(beds), lithologies, place[default], refused
+    mixtures = Mixtures.of(shares[:, used])
+    return _by_place(beds), mixtures, lithologies, int(np.searchsorted(used, default)), refused
 
 
-def _known(
-    frame: pd.DataFrame, catalogue: Catalogue, settings: Conductivity
-) -> tuple[pd.DataFrame, pd.DataFrame]:
+def _words(frame: pd.DataFrame) -> pd.Series:
+    """Return what each layer says of its rock: the lithology, else the formation."""
+    lithology, formation = (_stripped(frame[name]) for name in ("lithology", "formation"))
+    return lithology.where(lithology != "", formation).astype(object)
+
+
+def _stripped(cells: pd.Series) -> pd.Series:
+    """Return text without blanks around it; each word is looked at once, not each cell."""
+    place, words = pd.factorize(cells.astype(object))
+    plain = np.array([str(word).strip() for word in words] + [""], object)
+    return pd.Series(plain[place], index=cells.index, dtype=object)
+
+
+def _one_rock(words: Vocabulary, catalogue: Catalogue, name: str, setting: str) -> int:
+    """Return the place of a setting's rock, which must be one lithology."""
+    meaning = words.meaning(name)
+    if meaning.code or len(meaning.shares) != 1:
+        why = meaning.why or f"is a mixture; choose one of {', '.join(catalogue.names)}"
+        raise UserError(f'conductivity.{setting}: "{name}" {why}')
+    return meaning.shares[0][0]
+
+
+def _shares(
+    frame: pd.DataFrame,
+    words: Vocabulary,
+    catalogue: Catalogue,
+    default: int,
+    settings: Conductivity,
+) -> tuple[NDArray[np.float64], NDArray[np.int64]]:
+    """Return the mixtures that occur, (u, catalogue), and which of them each layer is, (l,)."""
+    word, names = pd.factorize(_words(frame), sort=True)
+    net = np.clip(frame["net_to_gross"].fillna(1.0).to_numpy(float), 0.0, 1.0).round(3)
+    levels, level = np.unique(net, return_inverse=True)
+    pairs, kind = np.unique(word * len(levels) + level, return_inverse=True)
+    shares = np.zeros((len(names), len(catalogue.names)))
+    for row, name in enumerate(names):
+        meaning = words.meaning(name) if name else Meaning(((default, 1.0),))
+        for place, share in meaning.shares:
+            shares[row, place] = share
+    mixed = shares[pairs // max(len(levels), 1)]
+    if (net < 1.0).any():
+        rest = _one_rock(words, catalogue, settings.non_net_lithology, "non_net_lithology")
+        share = levels[pairs % len(levels)][:, None]
+        mixed = share * mixed + (1.0 - share) * np.eye(len(catalogue.names))[rest]
+    return mixed, kind.astype(np.int64)
+
+
+def _known(frame: pd.DataFrame, vocabulary: Vocabulary) -> tuple[pd.DataFrame, pd.DataFrame]:
     """Split off layers of unknown rock; measured conductivity needs no known rock."""
-    names = frame["lithology"].fillna("").str.strip()
-    unknown = catalogue.unknown(names[names != ""], settings.lithologies)
-    strange = names.isin(unknown)
-    measured = frame["conductivity_w_mk"] > 0.0
-    lost = strange & ~measured
+    words = _words(frame)
+    strange = {
+        word: meaning
+        for word, meaning in vocabulary.meanings(word for word in words.unique() if word).items()
+        if meaning.code
+    }
+    here = words.isin(strange)
+    lost = here & ~(frame["conductivity_w_mk"] > 0.0)
     if lost.mean() > MOST_UNKNOWN:
         raise UserError(
-            [
-                f'lithology "{name}" is not in the catalogue; {near}'
-                for name, near in unknown.items()
-            ],
-            f"{lost.sum()} of {len(frame)} layers have a lithology that the conductivity catalogue "
-            "does not know. Name its rock under conductivity.lithologies (name in the layers: "
-            "name in the catalogue):",
+            [f'lithology "{word}" {strange[word].why}' for word in sorted({*words[lost]})],
+            f"{lost.sum()} of {len(frame)} layers ({lost.mean():.0%}, more than {MOST_UNKNOWN:.0%} "
+            "stops the run) have a lithology that the conductivity catalogue does not know. Name "
+            "its rock under conductivity.lithologies (name in the layers: "
+            "name in the catalogue), a formation's under conductivity.formations:",
         )
-    frame = frame.assign(lithology=frame["lithology"].mask(strange, ""))
-    why = names[lost].map(unknown)
+    named = frame.assign(lithology=words)[lost]
+    codes = words[lost].map(lambda word: strange[word].code)
     refused = _refuse(
-        frame[lost].assign(lithology=names[lost]),
-        "lithology_unknown",
-        [
-            f"not in the conductivity catalogue ({near}); map it in conductivity.lithologies"
-            for near in why
-        ],
+        named, codes.to_numpy(object), [_way_out(strange[word]) for word in words[lost]]
     )
-    return frame[~lost].reset_index(drop=True), refused
+    blank = {name: frame[name].mask(here, "") for name in ("lithology", "formation")}
+    return frame.assign(**blank)[~lost].reset_index(drop=True), refused
 
 
-def _sound(layers: pd.DataFrame) -> tuple[pd.DataFrame, pd.DataFrame]:
-    """Split off layers that can't be used: without thickness, above the surface, overlapping."""
+def _way_out(meaning: Meaning) -> str:
+    """Return why a word is not understood, and what to do."""
+    if meaning.code == UNKNOWN:
+        return f"{meaning.why}. Map it in conductivity.lithologies or conductivity.formations"
+    return meaning.why
+
+
+def _sound(layers: pd.DataFrame) -> pd.DataFrame:
+    """Return the layers by well and top; ``ingest`` has refused what can't be."""
     order = ["well", "top_m", "base_m", "lithology"]
     frame = layers.sort_values(order, kind="stable", ignore_index=True)
     top, base = frame["top_m"].to_numpy(float), frame["base_m"].to_numpy(float)
-    with np.errstate(invalid="ignore"):
-        thick = (base > top) & (base <= DEEPEST_M)
-        buried = top >= 0.0
-    known = frame["lithology"].fillna("").str.strip().ne("") | (frame["conductivity_w_mk"] > 0.0)
-    refused = [
-        _refuse(
-            frame[~thick], "layer_depths", f"base must be below top, not below {DEEPEST_M:.0f} m"
-        ),
-        _refuse(frame[thick & ~buried], "layer_above_surface", "top must not be above depth 0"),
-        _refuse(
-            frame[thick & buried & ~known],
-            "layer_without_rock",
-            "neither lithology nor conductivity is given",
-        ),
-    ]
-    frame = frame[thick & buried & known].reset_index(drop=True)
     codes = pd.factorize(frame["well"])[0]
-    over = overlapping(codes, frame["top_m"].to_numpy(float), frame["base_m"].to_numpy(float))
-    refused.append(_refuse(frame[over], "layer_overlap", "lies over the layer above it"))
-    return frame[~over].reset_index(drop=True), pd.concat(refused, ignore_index=True)
+    rock = _words(frame).ne("") | (frame["conductivity_w_mk"] > 0.0)
+    sound = (base > top) & (top >= 0.0) & rock.to_numpy() & ~overlapping(codes, top, base)
+    if not sound.all():
+        row = frame[~sound].iloc[0]
+        raise RuntimeError(
+            f"{(~sound).sum()} layers have no rock or no thickness, or lie over others: the first "
+            f"of well {row['well']} from {row['top_m']:g} to {row['base_m']:g} m"
+        )
+    return frame
 
 
-def _refuse(frame: pd.DataFrame, code: str, why: str | list[str]) -> pd.DataFrame:
+def _refuse(frame: pd.DataFrame, code: NDArray[np.object_], reasons: list[str]) -> pd.DataFrame:
     """Return the ledger's rows for layers."""
-    reasons = [why] * len(frame) if isinstance(why, str) else why
     value = [f"{t:g} to {b:g}" for t, b in zip(frame["top_m"], frame["base_m"], strict=True)]
     sentence = [
         f'layer "{name}" from {span} m: {reason}. Check the layers of well {well}.'
@@ -152,6 +196,8 @@ def _refuse(frame: pd.DataFrame, code: str, why: str | list[str]) -> pd.DataFram
         pd.DataFrame(
             {
                 "table": "layers",
+                "source_file": frame["source_file"].to_numpy(object),
+                "source_line": frame["source_line"].to_numpy(),
                 "well": frame["well"].to_numpy(object),
                 "column": "top, base",
                 "value": value,

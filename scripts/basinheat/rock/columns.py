@@ -13,7 +13,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from basinheat.conductivity import conditions
+from basinheat.conductivity import conditions, mixing
 from basinheat.rock.slabs import Slabs
 
 Array = NDArray[np.float64]
@@ -30,7 +30,8 @@ class Parts:
 
     ``slab``; ``share`` of the slab's thickness; ``conductivity_w_mk`` of the matrix at 25 degC;
     ``porosity``; ``law`` (place in ``conditions.LAW_NAMES``); ``heat_production_w_m3``; ``group``:
-    to which of the g groups (lithologies and such) the resistance counts.
+    to which of the g groups (lithologies and such) the resistance counts. ``tilt`` is vertical k
+    over that across the bedding, ``sedimentary`` whether pressure counts; None: 1, none.
     """
 
     slab: Whole
@@ -40,6 +41,25 @@ class Parts:
     law: Whole
     heat_production_w_m3: Array
     group: Whole
+    tilt: Array | None = None
+    sedimentary: NDArray[np.bool_] | None = None
+
+
+@dataclass(frozen=True)
+class Rules:
+    """How conductivities combine.
+
+    ``beds``: parts of an own layer ``harmonic`` (in series), ``geometric`` or ``arithmetic``;
+    ``fluid``: matrix and pore water, see ``mixing.FLUID_RULES``; ``pressure_mpa_per_m``: rise of
+    the pressure that sediments conduct better under, 0 for none.
+    """
+
+    beds: str = "harmonic"
+    fluid: str = "geometric"
+    pressure_mpa_per_m: float = 0.0
+
+
+USUAL = Rules()
 
 
 @dataclass(frozen=True)
@@ -54,6 +74,7 @@ class Columns:
     groups: int
     with_temperature: bool = True
     law_strength: float = 1.0
+    rules: Rules = USUAL
 
 
 @dataclass(frozen=True)
@@ -95,11 +116,9 @@ def integrate(columns: Columns, surface_degc: Array, heat_flow_w_m2: Array) -> I
     production = h * np.bincount(parts.slab, parts.share * parts.heat_production_w_m3, count)
     above = slabs.above(production)
     surface, flow = surface_degc[slabs.well], heat_flow_w_m2[slabs.well]
-    part_h = parts.share * h[parts.slab]
     temperature = surface + flow * slabs.middle_m / 2.5
     for _ in range(ITERATIONS):
-        conductivity = _conductivity(columns, temperature)
-        total = np.bincount(parts.slab, part_h / conductivity, count)
+        total = np.bincount(parts.slab, _resistance(columns, temperature), count)
         top = surface + slabs.above((flow - above - 0.5 * production) * total)
         middle = top + total * (0.5 * (flow - above) - 0.125 * production)
         middle = np.clip(middle, *_RANGE_DEGC)
@@ -107,7 +126,7 @@ def integrate(columns: Columns, surface_degc: Array, heat_flow_w_m2: Array) -> I
         temperature = middle
         if change < TOLERANCE_K or not columns.with_temperature:
             break
-    resistance = by_group(columns, part_h / _conductivity(columns, temperature))
+    resistance = by_group(columns, _resistance(columns, temperature))
     radiogenic = resistance * (above + 0.5 * production)[:, None]
     return Integrals(
         resistance,
@@ -121,9 +140,7 @@ def integrate(columns: Columns, surface_degc: Array, heat_flow_w_m2: Array) -> I
 
 def warmed(columns: Columns, integrals: Integrals, by_k: float) -> Array:
     """Return the resistance of each slab, (s, g), with all rock warmer by some kelvin."""
-    parts = columns.parts
-    part_h = parts.share * columns.slabs.thickness_m[parts.slab]
-    return by_group(columns, part_h / _conductivity(columns, integrals.temperature_degc + by_k))
+    return by_group(columns, _resistance(columns, integrals.temperature_degc + by_k))
 
 
 def at_depths(
@@ -164,8 +181,32 @@ def by_group(columns: Columns, values: Array) -> Array:
     return total.reshape(shape)
 
 
+def _resistance(columns: Columns, temperature_degc: Array) -> Array:
+    """Return the part that each part has in the resistance of its slab, (p,) m2 K/W.
+
+    In series that is its own. Where the parts of a layer conduct otherwise, the slab's h/k is
+    shared out by d ln k / d ln k_part, which sum to 1: so the level of a lithology moves the
+    resistance by its part in it, whatever the mixing.
+    """
+    parts, slabs = columns.parts, columns.slabs
+    conductivity = _conductivity(columns, temperature_degc)
+    resistance = parts.share * slabs.thickness_m[parts.slab] / conductivity
+    if columns.rules.beds == "harmonic":
+        return resistance
+    mixed = slabs.layer[parts.slab] >= 0  # the mean section stacks the rock of many wells
+    slab, share, k = parts.slab[mixed], parts.share[mixed], conductivity[mixed]
+    weight = share if columns.rules.beds == "geometric" else share * k
+    total = np.bincount(slab, weight * (np.log(k) if columns.rules.beds == "geometric" else 1.0))
+    if columns.rules.beds == "geometric":
+        total = np.exp(total)
+        resistance[mixed] = share * slabs.thickness_m[slab] / total[slab]
+    else:
+        resistance[mixed] = weight * slabs.thickness_m[slab] / total[slab] ** 2
+    return resistance
+
+
 def _conductivity(columns: Columns, temperature_degc: Array) -> Array:
-    """Return the conductivity of each part: geometric mean of matrix and pore water."""
+    """Return the conductivity of each part: temperature, then pore water, pressure, tilt."""
     parts = columns.parts
     if not columns.with_temperature:
         temperature_degc = np.full_like(temperature_degc, conditions.REFERENCE_DEGC)
@@ -174,4 +215,9 @@ def _conductivity(columns: Columns, temperature_degc: Array) -> Array:
     if columns.law_strength != 1.0:
         matrix = cold * (matrix / cold) ** columns.law_strength
     fluid = conditions.water(temperature_degc)[parts.slab]
-    return np.where(parts.porosity > 0.0, matrix * (fluid / matrix) ** parts.porosity, matrix)
+    mixed = mixing.with_fluid(matrix, fluid, parts.porosity, columns.rules.fluid)
+    out = np.where(parts.porosity > 0.0, mixed, matrix)
+    if columns.rules.pressure_mpa_per_m and parts.sedimentary is not None:
+        pressure = columns.rules.pressure_mpa_per_m * columns.slabs.middle_m[parts.slab]
+        out = np.where(parts.sedimentary, conditions.at_pressure(out, pressure), out)
+    return out if parts.tilt is None else out * parts.tilt

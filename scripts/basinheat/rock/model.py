@@ -8,9 +8,10 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from basinheat.conductivity import porosity
+from basinheat.conductivity import conditions, porosity
 from basinheat.conductivity.conditions import LAW_NAMES
-from basinheat.rock.columns import Columns, Parts
+from basinheat.rock.columns import USUAL, Columns, Parts, Rules
+from basinheat.rock.makeup import Beds, Lithologies, Mixtures
 from basinheat.rock.section import Section
 from basinheat.rock.slabs import Slabs, cut
 
@@ -20,38 +21,6 @@ Whole = NDArray[np.int64]
 LARGEST_STEP_M = 50.0
 CATALOGUE, MEASURED, BASIN_MEAN, ASSUMED = range(4)
 ORIGINS = ("catalogue", "measured", "basin_mean", "assumed")
-
-
-@dataclass(frozen=True)
-class Lithologies:
-    """Properties of the m lithologies in use; arrays (m,), as in the catalogue."""
-
-    names: tuple[str, ...]
-    conductivity_w_mk: Array
-    std_ln: Array
-    porosity_surface: Array
-    compaction_per_m: Array
-    heat_production_w_m3: Array
-    law: Whole
-
-
-@dataclass(frozen=True)
-class Beds:
-    """The l layers of all wells, by well and top, without overlaps; arrays (l,).
-
-    ``well`` and ``lithology`` are places; ``conductivity_w_mk`` (whole rock at 25 degC),
-    ``porosity`` and ``heat_production_w_m3`` are NaN where not measured; ``std_ln`` is the
-    relative uncertainty of the measured conductivity.
-    """
-
-    well: Whole
-    top_m: Array
-    base_m: Array
-    lithology: Whole
-    conductivity_w_mk: Array
-    std_ln: Array
-    porosity: Array
-    heat_production_w_m3: Array
 
 
 @dataclass(frozen=True)
@@ -70,10 +39,12 @@ class RockModel:
     """All that is known of the rock of n wells; ``deepest_m`` (n,): where the columns end.
 
     Groups of the columns are the m lithologies, then measured layers, then the rock below.
-    ``law_strength``: power on k(T) / k(25 degC).
+    ``law_strength``: power on k(T) / k(25 degC);
+    ``rules``: how conductivities combine.
     """
 
     lithologies: Lithologies
+    mixtures: Mixtures
     beds: Beds
     section: Section
     below: Below
@@ -81,6 +52,7 @@ class RockModel:
     interval_m: float
     with_temperature: bool = True
     law_strength: float = 1.0
+    rules: Rules = USUAL
 
     @property
     def step_m(self) -> float:
@@ -108,7 +80,12 @@ class RockModel:
         bed = np.where(slabs.layer >= 0, order[slabs.layer] if len(order) else -1, -1)
         slabs = Slabs(slabs.start, slabs.well, slabs.top_m, slabs.base_m, bed)
         return Columns(
-            slabs, self._parts(slabs), self.rocks + 2, self.with_temperature, self.law_strength
+            slabs,
+            self._parts(slabs),
+            self.rocks + 2,
+            self.with_temperature,
+            self.law_strength,
+            self.rules,
         )
 
     def with_law_strength(self, factor: float) -> RockModel:
@@ -143,12 +120,20 @@ class RockModel:
         row, lithology = np.nonzero(share)
         pieces = [
             self._own(slabs, own),
-            self._catalogue(slabs, mean[row], lithology, share[row, lithology]),
+            self._mean(slabs, mean[row], lithology, share[row, lithology]),
             self._below(below),
         ]
         joined = [np.concatenate(arrays) for arrays in zip(*pieces, strict=True)]
         order = np.argsort(joined[0], kind="stable")
         return Parts(*[array[order] for array in joined])
+
+    def _mean(
+        self, slabs: Slabs, slab: Whole, lithology: Whole, share: Array
+    ) -> tuple[NDArray[Any], ...]:
+        """Parts of the mean section; what mixing makes of k goes the way of the tilt."""
+        *parts, _, sedimentary = self._catalogue(slabs, slab, lithology, share)
+        blend = self.section.blend_at(slabs.middle_m[slab], lithology)
+        return (*parts, blend, sedimentary)
 
     def _catalogue(
         self, slabs: Slabs, slab: Whole, lithology: Whole, share: Array
@@ -167,26 +152,51 @@ class RockModel:
             rock.law[lithology],
             rock.heat_production_w_m3[lithology],
             lithology,
+            np.ones(len(slab)),
+            rock.sedimentary[lithology],
         )
 
     def _own(self, slabs: Slabs, slab: Whole) -> tuple[NDArray[Any], ...]:
         """Parts of the wells' own layers: what is measured goes before the catalogue."""
         beds, bed = self.beds, slabs.layer[slab]
-        _, share, k, phi, law, heat, group = self._catalogue(
-            slabs, slab, beds.lithology[bed], np.ones(len(slab))
-        )
+        owner, part = self.mixtures.parts(beds.mixture[bed])
+        rock = self.lithologies.heat_production_w_m3[self.mixtures.lithology[part]]
+        heat: Array = np.bincount(owner, self.mixtures.share[part] * rock, len(slab)).astype(float)
         measured = np.isfinite(beds.conductivity_w_mk[bed])
+        known = measured[owner]
+        pieces = [
+            self._mixed(slabs, slab[owner[~known]], part[~known]),
+            self._measured(slab[measured], bed[measured], heat[measured]),
+        ]
+        return tuple(np.concatenate(arrays) for arrays in zip(*pieces, strict=True))
+
+    def _mixed(self, slabs: Slabs, slab: Whole, part: Whole) -> tuple[NDArray[Any], ...]:
+        """Parts of layers of known lithologies."""
+        beds, bed = self.beds, slabs.layer[slab]
+        lithology = self.mixtures.lithology[part]
+        _, share, k, phi, law, heat, group, _, sedimentary = self._catalogue(
+            slabs, slab, lithology, self.mixtures.share[part]
+        )
+        tilt = conditions.tilted(beds.dip_deg[bed], self.lithologies.anisotropy[lithology])
+        own = beds.heat_production_w_m3[bed]
         phi = np.where(np.isfinite(beds.porosity[bed]), beds.porosity[bed], phi)
+        heat = np.where(np.isfinite(own), own, heat)
+        return slab, share, k, phi, law, heat, group, tilt, sedimentary
+
+    def _measured(self, slab: Whole, bed: Whole, heat: Array) -> tuple[NDArray[Any], ...]:
+        """Parts of layers whose conductivity was measured: each one rock."""
+        beds, own = self.beds, self.beds.heat_production_w_m3[bed]
+        main = self.mixtures.main[beds.mixture[bed]]
         return (
             slab,
-            share,
-            np.where(measured, beds.conductivity_w_mk[bed], k),
-            np.where(measured, 0.0, phi),
-            law,
-            np.where(
-                np.isfinite(beds.heat_production_w_m3[bed]), beds.heat_production_w_m3[bed], heat
-            ),
-            np.where(measured, self.rocks, group),
+            np.ones(len(slab)),
+            beds.conductivity_w_mk[bed],
+            np.zeros(len(slab)),
+            self.lithologies.law[main],
+            np.where(np.isfinite(own), own, heat),
+            np.full(len(slab), self.rocks),
+            np.ones(len(slab)),
+            self.lithologies.sedimentary[main],
         )
 
     def _below(self, slab: Whole) -> tuple[NDArray[Any], ...]:
@@ -199,4 +209,6 @@ class RockModel:
             np.full(len(slab), self.below.law),
             self.below.heat_production_w_m3 * one,
             np.full(len(slab), self.rocks + 1),
+            one,
+            np.zeros(len(slab), bool),
         )

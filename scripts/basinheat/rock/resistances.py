@@ -10,9 +10,10 @@ import numpy as np
 import pandas as pd
 from numpy.typing import NDArray
 
-from basinheat.conductivity import catalogue
+from basinheat.conductivity.overrides import law_of, load_overridden
 from basinheat.rock import regionalflow, section
 from basinheat.rock.beds import prepare_beds
+from basinheat.rock.columns import Rules
 from basinheat.rock.model import ORIGINS, Below, RockModel
 from basinheat.rock.passes import Passes, Wanted, first_pass, regional_flow, second_pass
 from basinheat.settings.heat import Conductivity, HeatFlow
@@ -128,21 +129,24 @@ def _model(
     readings: Wanted, wells: pd.DataFrame, layers: pd.DataFrame, settings: Conductivity
 ) -> tuple[RockModel, pd.DataFrame]:
     """Put the rock model together."""
-    rocks = catalogue.load(settings.catalogue)
-    beds, lithologies, default, rejected = prepare_beds(layers, wells, rocks, settings)
+    rocks = load_overridden(settings.catalogue, settings.model_dump())
+    beds, mixtures, lithologies, default, rejected = prepare_beds(layers, wells, rocks, settings)
     deepest = np.full(len(wells), settings.interval_m)
     np.maximum.at(deepest, readings.well, readings.depth_m)
     np.maximum.at(deepest, beds.well, beds.base_m)
     step = settings.interval_m
     if len(beds.well):
         with_layers = len(np.unique(beds.well))
+        bed, part = mixtures.parts(beds.mixture)
         mean = section.mean_section(
-            beds.top_m,
-            beds.base_m,
-            beds.lithology,
+            beds.top_m[bed],
+            beds.base_m[bed],
+            mixtures.lithology[part],
             len(lithologies.names),
             step,
             min(settings.wells_per_interval, with_layers),
+            mixtures.share[part],
+            mixtures.resistive(lithologies, beds, bed, part, settings.mixing.beds),
         )
     else:
         log.warning("no well has layers: %s assumed everywhere", settings.default_lithology)
@@ -150,6 +154,7 @@ def _model(
     below = settings.below_layers
     model = RockModel(
         lithologies=lithologies,
+        mixtures=mixtures,
         beds=beds,
         section=mean,
         below=Below(
@@ -157,10 +162,16 @@ def _model(
             below.std_ln,
             below.growth_ln_per_km / 1000.0,
             below.heat_production_uw_m3 * 1e-6,
+            law_of("sedimentary", settings.laws.model_dump()),
         ),
         deepest_m=np.ceil(deepest / step - 1e-9) * step,
         interval_m=step,
         with_temperature=settings.temperature_law,
+        rules=Rules(
+            settings.mixing.beds,
+            settings.fluid_mixing,
+            settings.pressure_mpa_per_km / 1000.0 if settings.pressure != "none" else 0.0,
+        ),
     )
     return model, rejected
 

@@ -20,17 +20,28 @@ class Section:
     """Mean section of the basin, in b bins of depth.
 
     ``share`` (b, m): share of each lithology, sum 1; ``step_m``: thickness of a bin; ``known_m``:
-    depth that enough wells' layers reach, below it other rock is assumed.
+    depth that enough wells' layers reach, below it other rock is assumed; ``blend`` (b, m): by how
+    much a lithology conducts better than in series, for being mixed within layers; None: not.
     """
 
     share: Array
     step_m: float
     known_m: float
+    blend: Array | None = None
 
     def at(self, depth_m: Array) -> Array:
         """Return the shares at depths, (s, m); below the last bin those of the last."""
+        return self.share[self._bin(depth_m)]
+
+    def blend_at(self, depth_m: Array, lithology: Whole) -> Array:
+        """Return what mixing within layers makes of conductivities, (s,), at depths."""
+        if self.blend is None:
+            return np.ones(len(lithology))
+        return self.blend[self._bin(depth_m), lithology]
+
+    def _bin(self, depth_m: Array) -> Whole:
         place = np.floor(np.asarray(depth_m) / self.step_m).astype(int)
-        return self.share[np.clip(place, 0, len(self.share) - 1)]
+        return np.clip(place, 0, len(self.share) - 1)
 
 
 def uniform(lithology: int, count: int) -> Section:
@@ -39,7 +50,14 @@ def uniform(lithology: int, count: int) -> Section:
 
 
 def mean_section(
-    top_m: Array, base_m: Array, lithology: Whole, count: int, step_m: float, enough: int
+    top_m: Array,
+    base_m: Array,
+    lithology: Whole,
+    count: int,
+    step_m: float,
+    enough: int,
+    share: Array | None = None,
+    resistive: Array | None = None,
 ) -> Section:
     """Average the layers of all wells by depth.
 
@@ -55,6 +73,10 @@ def mean_section(
         Thickness of the bins.
     enough : int
         Wells that must reach a bin for it to be known.
+    share : ndarray, shape (l,), optional
+        Of a layer's thickness, where a layer stands once for each of its lithologies; default 1.
+    resistive : ndarray, shape (l,), optional
+        Resistance over that in series, where lithologies of a layer are mixed otherwise.
 
     Returns
     -------
@@ -67,6 +89,7 @@ def mean_section(
     place = first[layer] + np.arange(len(layer)) - np.repeat(np.cumsum(bins) - bins, bins)
     upper = np.maximum(top_m[layer], place * step_m)
     inside = np.maximum(np.minimum(base_m[layer], (place + 1) * step_m) - upper, 0.0)
+    inside = inside if share is None else inside * share[layer]
     depth_bins = int(place.max()) + 1
     thickness = np.bincount(place * count + lithology[layer], inside, depth_bins * count)
     thickness = thickness.reshape(depth_bins, count)
@@ -75,7 +98,14 @@ def mean_section(
     nearest = known[np.abs(np.arange(depth_bins)[:, None] - known).argmin(1)]
     reached = np.flatnonzero(total >= (enough - 0.5) * step_m)
     known_m = (reached.max() + 1) * step_m if len(reached) else 0.0
-    return Section(thickness[nearest] / total[nearest][:, None], step_m, float(known_m))
+    blend = None
+    if resistive is not None:
+        flat = place * count + lithology[layer]
+        mixed = np.bincount(flat, inside * resistive[layer], depth_bins * count)
+        mixed = mixed.reshape(depth_bins, count)[nearest]
+        blend = np.where(mixed > 0.0, thickness[nearest] / np.where(mixed > 0.0, mixed, 1.0), 1.0)
+    share_of = thickness[nearest] / total[nearest][:, None]
+    return Section(share_of, step_m, float(known_m), blend)
 
 
 def spread(own_slowness: Array, mean_slowness: Array, interval_m: float) -> Array:
