@@ -12,7 +12,9 @@ sys.path.insert(0, str(ROOT / "scripts"))
 from basinheat.mapnames import map_names, raster_files
 from basinheat.provenance import code_digest, code_digests
 from basinheat.settings.files import (
+    catalogue_file,
     data_files,
+    formation_tables,
     input_files,
     input_tables,
     nearby,
@@ -61,10 +63,21 @@ rule all:
         ),
 
 
-# Read and screen only: what was kept and what was refused, before anything is mapped.
+# Read and screen only: what the files hold and what was refused, before anything is mapped.
+# A rule without output runs whenever it is asked for, so the text is printed each time.
 rule first_look:
     input:
-        expand("results/{run}/wells/rejected.csv", run=BASE.run),
+        text=f"results/{BASE.run}/wells/first_look.txt",
+        page=f"results/{BASE.run}/wells/first_look.html",
+    log:
+        f"results/{BASE.run}/logs/first_look.log",
+    localrule: True
+    conda:
+        "envs/environment.yaml"
+    message:
+        "What the inputs hold, also as a page: {input.page}"
+    shell:
+        "cat {input.text:q} 2> {log:q}"
 
 
 onsuccess:

@@ -26,4 +26,5 @@ judged = validation.cross_validate(
 )
 tables.CrossValidation.save(judged.heat_flow, snakemake.output.heat_flow)
 tables.Closure.save(judged.temperature, snakemake.output.temperature)
+tables.WellColumns.save(judged.columns, snakemake.output.columns)
 documents.save(judged.scores, snakemake.output.scores)

@@ -78,7 +78,7 @@ def _tables(names):
         correction_k=10.0,
         method="conductive_recovery",
         variance_class="recovery:single",
-        passed_over="equilibrium: treats equilibrium readings",
+        passed_over="horner: fewer than 2 timed readings",
     )
     left_out = temperatures[["well", "depth_m", "temperature_degc", "method"]].assign(
         left_out_k=-4.0 * z, left_out_std_k=4.0, predicted_degc=temperatures.temperature_degc
@@ -101,7 +101,9 @@ def _tables(names):
         "layers": tables.Layers.empty(),
         "rejected": tables.Rejected.conform(rejected),
         "rejected_later": tables.Rejected.conform(later),
+        "first_look": {"files": [], "questions": []},
         "temperatures": tables.Temperatures.conform(temperatures),
+        **_compared(count),
         "resistances": tables.Resistances.conform(
             temperatures[["well", "depth_m"]].assign(origin="catalogue")
         ),
@@ -120,10 +122,117 @@ def _tables(names):
                 }
             )
         ),
+        "calibration": _pairs(),
         "crossval_heat_flow": tables.CrossValidation.conform(
             flow.assign(predicted=60.0, predicted_std=5.0, z_score=z)
         ),
         "crossval_temperature": tables.Closure.conform(left_out),
+    }
+
+
+PAIRS = 10
+
+
+def _pairs():
+    """Ten pairs: the calibration is off by -2 above and +2 K below, Horner always by -3 K."""
+    anchors = np.resize(["equilibrium", "dst"], PAIRS)
+    place = pd.DataFrame(
+        {
+            "well": [f"W-{i:02d}" for i in range(PAIRS)],
+            "depth_m": np.linspace(1000.0, 2800.0, PAIRS),
+            "anchor_well": [f"W-{i:02d}" for i in range(PAIRS)],
+            "anchor_kind": anchors,
+            "anchor_temperature_degc": 60.0,
+            "anchor_std_k": 1.5,
+            "since_circulation_h": np.where(anchors == "dst", np.nan, 10.0),
+            "taught": True,
+        }
+    )
+    own = np.where(np.arange(PAIRS) < PAIRS // 2, -2.0, 2.0)
+    return tables.Calibration.conform(
+        pd.concat(
+            [
+                place.assign(method="local_calibration", chosen=False, residual_k=own),
+                place.assign(method="horner", chosen=True, residual_k=-3.0),
+            ]
+        )
+    )
+
+
+def _calibration():
+    """A constant is chosen, a line predicts no better, the rest is refused."""
+    found = {"pairs": PAIRS, "wells": PAIRS, "left_out_bias_k": 0.0, "scatter_k": 2.1}
+    found |= {"top_m": 1000.0, "base_m": 2800.0}
+    one, line = {"constant": 10.0}, {"constant": 10.0, "depth": 1.0}
+    refused = {"pairs": PAIRS, "wells": PAIRS, "chosen": False, "refused": "10 pairs, it needs 20"}
+    return {
+        "pairs": PAIRS,
+        "wells": PAIRS,
+        "pairs_in_one_well": PAIRS,
+        "steps": {
+            "constant": found
+            | {"chosen": True, "left_out_rmse_k": 2.3, "coefficients_k": one}
+            | {"coefficients_std_k": {"constant": 0.7}},
+            "linear": found
+            | {"chosen": False, "left_out_rmse_k": 2.29, "coefficients_k": line}
+            | {"coefficients_std_k": {"constant": 0.7, "depth": 1.2}},
+            **{
+                name: dict(refused)
+                for name in ("quadratic", "quadratic_with_time", "scaled_with_time")
+            },
+        },
+    }
+
+
+def _compared(count):
+    """Two methods and the chosen one in two depth intervals; nothing stands out."""
+    parts = [
+        pd.DataFrame({"top_m": [np.nan, 500.0, 1000.0], "base_m": [np.nan, 1000.0, 1500.0]}).assign(
+            method=method, sets=sets, n_sets=count, n_treated=count // share,
+            share_treated=1.0 / share, correction_k=9.0 + share, correction_low_k=8.0,
+            correction_high_k=13.0, difference_k=share - 1.0, total_std_k=5.0,
+        )
+        for method, share in (("horner", 4), ("conductive_recovery", 1), ("chosen", 1))
+        for sets in ("own", "common")
+    ]  # fmt: skip
+    line = {"n_sets": count, "n_wells": count, "top_m": 800.0, "base_m": 2600.0}
+    line |= {"slope_mw_m2": 60.0, "intercept_k": 0.4, "intercept_std_k": 0.8, "expected_std_k": 1.1}
+    groups = [("raw", "", False), ("method", "horner", False), ("class", "recovery:single", True),
+              ("final", "", True)]  # fmt: skip
+    return {
+        "correction_summary": tables.CorrectionSummary.conform(pd.concat(parts)),
+        "anchor_differences": tables.AnchorDifferences.conform(
+            pd.DataFrame(
+                {
+                    "method": ["raw", "horner"],
+                    "anchor": "equilibrium",
+                    "n_pairs": 9,
+                    "n_wells": 8,
+                    "difference_k": [-9.0, -1.0],
+                    "difference_std_k": 0.7,
+                    "spread_k": 2.0,
+                    "chosen_difference_k": 0.3,
+                }
+            )
+        ),
+        "intercepts": tables.Intercepts.conform(
+            pd.DataFrame([{"group": g, "subject": s, "in_use": u, **line} for g, s, u in groups])
+        ),
+        "method_sigmas": tables.MethodSigmas.conform(
+            pd.DataFrame(
+                {
+                    "method": ["horner", "conductive_recovery"],
+                    "title": ["Horner plot", "Recovery"],
+                    "kind": "bht",
+                    "variance_class": ["method:horner", "recovery:single"],
+                    "n_estimates": [0, count],
+                    "known_bias": "low",
+                    "temperature_std_k": 5.0,
+                    "scale": [np.nan, 1.2],
+                    "base_m": np.inf,
+                }
+            )
+        ),
     }
 
 
@@ -152,5 +261,8 @@ def _records():
             "variance_scales": {"recovery:single": 1.2},
         },
         "structure_model": {"groups": [group], "vertical_correlation_m": 500.0},
-        "recovery": {"conductive_recovery": {"law": {"slope": 0.35}, "sets_that_taught": 12}},
+        "recovery": {
+            "conductive_recovery": {"law": {"slope": 0.35}, "sets_that_taught": 12},
+            "calibration": _calibration(),
+        },
     }

@@ -39,10 +39,11 @@ class Mapped:
 
 @dataclass(frozen=True)
 class Judged:
-    """The two tables and all scores."""
+    """The tables CrossValidation, Closure and WellColumns, and all scores."""
 
     heat_flow: pd.DataFrame
     temperature: pd.DataFrame
+    columns: pd.DataFrame
     scores: dict[str, Any]
 
 
@@ -64,14 +65,14 @@ def cross_validate(
     Returns
     -------
     Judged
-        Tables CrossValidation and Closure, and scores by name.
+        Tables CrossValidation, Closure and WellColumns, and scores by name.
     """
     engine = heat_flow_engine(
         mapped.points, mapped.information, mapped.heat_flow_model, "global", mapped.trend
     )
     left_out = engine.leave_one_out()
     heat_flow, judged = _judge_heat_flow(mapped, validation, engine, left_out)
-    temperature = _judge_temperature(
+    temperature, columns = _judge_temperature(
         mapped, temperatures, wells, conductivity, maps, engine, left_out
     )
     judged["temperature_closure"] = _scores_of(temperature, "residual_k")
@@ -79,7 +80,7 @@ def cross_validate(
     held = temperature["well"].isin(validation.holdout)
     if held.any():
         judged["temperature_holdout"] = _scores_of(temperature[held], "left_out_k")
-    return Judged(heat_flow, temperature, judged)
+    return Judged(heat_flow, temperature, columns, judged)
 
 
 def _judge_heat_flow(
@@ -127,7 +128,7 @@ def _judge_temperature(
     maps: Maps,
     engine: GlobalKriging,
     left_out: tuple[Floats, Floats],
-) -> pd.DataFrame:
+) -> tuple[pd.DataFrame, pd.DataFrame]:
     """Rebuild the column of every well, with and without the well itself."""
     wells = wells[wells["well"].isin(temperatures["well"])].sort_values("well")
     cells = wells.assign(row=np.arange(len(wells)), col=0).reset_index(drop=True)
@@ -148,7 +149,29 @@ def _judge_temperature(
         _structure_left_out(structure, cells, mapped, conductivity.wells_per_interval),
         mapped,
     )
-    return _residuals(temperatures, cells, kept, without)
+    return (
+        _residuals(temperatures, cells, kept, without),
+        _well_columns(temperatures, cells, kept, without),
+    )
+
+
+def _well_columns(
+    temperatures: pd.DataFrame, cells: pd.DataFrame, kept: Columns, left_out: Columns
+) -> pd.DataFrame:
+    """Return the columns as a table: of each well down to the edge below its deepest reading."""
+    deepest = temperatures.groupby("well")["depth_m"].max().reindex(cells["well"]).to_numpy()
+    last = np.searchsorted(kept.edges, deepest)
+    row, edge = np.nonzero(np.arange(len(kept.edges)) <= last[:, None])
+    return pd.DataFrame(
+        {
+            "well": cells["well"].to_numpy()[row],
+            "depth_m": kept.edges[edge],
+            "rebuilt_degc": kept.temperature[row, edge],
+            "rebuilt_std_k": np.sqrt(kept.variance[row, edge]),
+            "predicted_degc": left_out.temperature[row, edge],
+            "predicted_std_k": np.sqrt(left_out.variance[row, edge]),
+        }
+    )
 
 
 def _rebuilt(

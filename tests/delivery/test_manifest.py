@@ -9,6 +9,7 @@ import pytest
 
 from basinheat.delivery import cautions, manifest, raster, rejects
 from basinheat.delivery.metadata import STATUS_CLASSES
+from basinheat.tables.spreadsheet import inert
 
 
 @pytest.fixture(scope="module")
@@ -18,6 +19,7 @@ def folder(tmp_path_factory, maps, grid, about, results):
     few = maps[["row", "col", "heat_flow", "heat_flow_std", "status"]]
     raster.write_all(few, grid, path / "rasters", about)
     (path / "report.html").write_text("<p>report</p>")
+    (path / "wells.html").write_text("<p>wells</p>")
     (path / "demo.gpkg").write_bytes(b"stands for the GeoPackage")
     write = {"config": {"run": "demo"}, "inputs": {"wells.csv": "0" * 64}, "code": {"x": "1"}}
     manifest.write(path, grid, results["rejected"], about, **write)
@@ -34,7 +36,7 @@ def test_manifest_lists_every_file_with_its_true_hash(folder):
     }
     assert listed == on_disk
     assert "rasters/heat_flow.tif" in listed
-    assert "rejected.csv" in listed
+    assert {"rejected.csv", "wells.html"} <= {*listed}
 
 
 def test_manifest_has_the_parts_that_the_design_promises(folder):
@@ -77,13 +79,13 @@ def test_rejects_hold_no_formula(folder, results):
 )
 def test_formulas_become_inert(text):
     """The signs that start a formula, also after blanks."""
-    assert rejects.inert(text) == f"'{text}"
+    assert inert(text) == f"'{text}"
 
 
 @pytest.mark.parametrize("text", ["", "-12", "+1.5e3", "-.5", "1,5", "-3,25", "BW-1", "a=b", "'x"])
 def test_numbers_and_words_stay(text):
     """What is no formula is not touched."""
-    assert rejects.inert(text) == text
+    assert inert(text) == text
 
 
 def test_readme_carries_all_cautions_and_conventions(folder, grid):
@@ -95,6 +97,7 @@ def test_readme_carries_all_cautions_and_conventions(folder, grid):
         "rasters/heat_flow_std.tif",
         "rejected.csv",
         "manifest.json",
+        "wells.html",
         "demo.gpkg",
         grid.crs,
         "west 500000, south 5100000, east 1100000, north 5800000",

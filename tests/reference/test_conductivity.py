@@ -25,6 +25,24 @@ def test_mixing_laws(mix, expected):
     assert mix(*MATRIX_WATER) == pytest.approx(expected, abs=5e-4, rel=1e-7)
 
 
+@pytest.mark.parametrize(
+    ("rule", "expected"),
+    [
+        ("arithmetic", 3.32),  # E1a
+        ("harmonic", 1.875),  # E1, three decimals
+        ("geometric", 2.737),  # E1, three decimals
+        ("square_root", 3.0797419),  # E1s
+        ("hashin_shtrikman_upper", 3.1206897),  # E1u
+        ("hashin_shtrikman_lower", 2.5741935),  # E1l
+    ],
+)
+def test_matrix_and_pore_water(rule, expected):
+    """Matrix 4, water 0.6 W/(m K), porosity 0.2; and the limits of no pores and nothing but."""
+    matrix, fluid = np.full(3, 4.0), np.full(3, 0.6)
+    found = mixing.with_fluid(matrix, fluid, np.array([0.2, 0.0, 1.0]), rule)
+    assert found == pytest.approx([expected, 4.0, 0.6], rel=2e-4 if rule[0] == "g" else 1e-7)
+
+
 def test_hashin_shtrikman_bounds():
     lower, upper = mixing.hashin_shtrikman(*MATRIX_WATER)
     assert lower == pytest.approx(2.5741935, rel=1e-7)  # E1l
@@ -101,6 +119,86 @@ def test_sekiguchi_waples(k20, degc, expected):
     """E5sek; coefficients read in three open codes."""
     k25 = 358 * (1.0227 * k20 - 1.882) * (1 / 298.15 - 0.00068) + 1.84
     assert conditions.sekiguchi_waples(k25, degc) == pytest.approx(expected, rel=1e-7)
+
+
+@pytest.mark.parametrize(
+    ("law", "k20", "degc", "expected"),
+    [
+        ("sekiguchi1984", 2.0, 100, 1.9576563),
+        ("sekiguchi1984", 3.0, 100, 2.6899969),
+        ("sekiguchi1984", 4.0, 100, 3.4223375),
+        ("sekiguchi1984", 4.0, 200, 2.9749589),
+        ("chapman1984", 2.0, 100, 1.5710456),
+        ("chapman1984", 3.0, 100, 2.3565684),
+        ("chapman1984", 3.0, 200, 1.858351),
+        ("chapman1984", 4.0, 200, 2.4778013),
+    ],
+)
+def test_laws_anchored_at_20(law, k20, degc, expected):
+    """E5sekg, E5chap: the value at 20 degC goes in through the law; coefficients from memory."""
+    function = conditions.LAWS[law]
+    k25 = k20 * k20 / function(k20, 20.0)  # both laws are straight lines in k: first guess
+    for _ in range(20):
+        k25 *= k20 / function(k25, 20.0)
+    assert function(k25, degc) == pytest.approx(expected, rel=1e-6)
+
+
+@pytest.mark.parametrize(
+    ("k", "degc", "expected"),
+    [
+        (2.0, 100, 1.9950421),
+        (2.0, 200, 1.9901088),
+        (3.0, 100, 2.7413628),
+        (3.0, 200, 2.4622419),
+        (4.0, 200, 3.0414363),
+    ],
+)
+def test_sass(k, degc, expected):
+    """E5sass, from memory: its printed k0 is 0.1 % off at 25 degC; ours is the exact inverse."""
+    assert conditions.sass1992(k, degc) == pytest.approx(expected, rel=0.002)
+    k0 = np.roots([1.0, -(1.007 + 25 * 0.0036) * k, 25 * 0.0072 * k]).max()
+    exact = k0 / (1.007 + degc * (0.0036 - 0.0072 / k0))
+    assert conditions.sass1992(k, degc) == pytest.approx(exact, rel=1e-9)
+
+
+@pytest.mark.parametrize(
+    ("a", "b", "linear", "squared", "product"),
+    [(0.0030, 0.0042, None, 1.134225, 0.42), (0.0034, 0.0039, 0.5375, 1.155625, 0.39)],
+)
+def test_printed_inverse_is_the_exact_one_rounded(a, b, linear, squared, product):
+    """E5id: 0.5 (0.99 + 25 a), its square times 4, 100 b; printed 0.54, 1.13/1.16, 0.42/0.39.
+
+    Vosteen & Schellschmidt (2003); k0 = linear k25 + sqrt(squared k25^2 - product k25) / 2.
+    """
+    k25 = np.linspace(1.5, 6.0, 10)
+    k0 = (0.99 + 25 * a) / 2 * k25 + 0.5 * np.sqrt(squared * k25**2 - product * k25)
+    law = conditions.vosteen2003_sed if a == 0.0034 else conditions.vosteen2003_cryst
+    assert law(k25, 120.0) == pytest.approx(k0 / (0.99 + 120 * (a - b / k0)), rel=1e-9)
+    assert linear is None or (0.99 + 25 * a) / 2 == pytest.approx(linear)
+
+
+def test_pressure():
+    """E8: Fuchs & Foerster (2014), 2.5 W/(m K) at 30 MPa; from memory."""
+    assert conditions.at_pressure(2.5, 30.0) == pytest.approx(2.702539, rel=1e-6)
+    assert conditions.at_pressure([1.0, 2.5, 5.0], 0.0) == pytest.approx([1.0, 2.5, 5.0])
+
+
+def test_dipping_beds():
+    """E9: 1.6 across and 2.4 W/(m K) along beds that dip 30 degrees: 1.8 vertically."""
+    assert 1.6 * conditions.tilted(30.0, 2.4 / 1.6) == pytest.approx(1.8, rel=1e-9)
+    assert 1.6 * conditions.tilted([0.0, 90.0], 1.5) == pytest.approx([1.6, 2.4])
+
+
+def test_two_laws_of_salt_agree():
+    """E6z: Zoth & Haenel (1988), from memory: 5.89 at 20 degC, 4.4677778 at 100 degC."""
+    fall = conditions.halite(5.5, 100.0) / conditions.halite(5.5, 20.0)
+    assert fall == pytest.approx(4.4677778 / 5.89, rel=0.03)
+
+
+@pytest.mark.parametrize(("degc", "expected"), [(20, 0.599708), (25, 0.60748125), (60, 0.651772)])
+def test_water_agrees_with_the_quadratic(degc, expected):
+    """E7h: 0.565 + 1.88e-3 T - 7.23e-6 T2, its sign corrected; all fits within 0.7 % to 60 degC."""
+    assert conditions.water(degc) == pytest.approx(expected, rel=0.007)
 
 
 @pytest.mark.parametrize(

@@ -1,4 +1,8 @@
-"""Kriging against a worked set, gstat's numbers on open data, PyKrige and GSTools."""
+"""Kriging against a worked set, gstat's numbers on open data, PyKrige, GSTools, gstlearn."""
+
+import json
+import subprocess
+import sys
 
 import numpy as np
 import pytest
@@ -6,6 +10,7 @@ from shared import shared_file
 
 from basinheat.geostat.engine_global import GlobalKriging
 from basinheat.geostat.engine_pykrige import PyKrigeKriging
+from basinheat.geostat.engine_tiles import TileKriging
 from basinheat.geostat.models import MODELS, Covariance
 from basinheat.geostat.scores import scores
 
@@ -100,29 +105,41 @@ def assert_same(prediction, expected):
     np.testing.assert_allclose(prediction.variance, expected["var"], rtol=1e-9, atol=1e-11)
 
 
+def tiles_with_all_data(*given):
+    """Make tiles that take all of some hundred data."""
+    return TileKriging(*given, nearest=200)
+
+
+ENGINES = pytest.mark.parametrize("engine", [GlobalKriging, tiles_with_all_data])
+
+
+@ENGINES
 @pytest.mark.parametrize("name", GSTAT)
-def test_grid_equals_gstat(name):
+def test_grid_equals_gstat(name, engine):
     data, expected = meuse("meuse"), meuse(f"{name}_grid")
     covariance, error = GSTAT[name]
-    kriging = GlobalKriging(places(data), covariance, error).solve(data["logzn"])
+    kriging = engine(places(data), covariance, error).solve(data["logzn"])
     assert_same(kriging.predict(places(expected)), expected)
 
 
-def test_own_error_of_each_datum_equals_gstat_weights():
+@ENGINES
+def test_own_error_of_each_datum_equals_gstat_weights(engine):
     data, expected = meuse("hetero_input"), meuse("ok_sph_hetero_weights_grid")
-    kriging = GlobalKriging(places(data), SPHERICAL, data["err_var"]).solve(data["logzn"])
+    kriging = engine(places(data), SPHERICAL, data["err_var"]).solve(data["logzn"])
     assert_same(kriging.predict(places(expected)), expected)
 
 
-def test_linear_drift_equals_gstat():
+@ENGINES
+def test_linear_drift_equals_gstat(engine):
     data, expected = meuse("meuse"), meuse("uk_xy_exp_grid")
-    kriging = GlobalKriging(places(data), EXPONENTIAL, trend="linear").solve(data["logzn"])
+    kriging = engine(places(data), EXPONENTIAL, 0.0, "linear").solve(data["logzn"])
     assert_same(kriging.predict(places(expected)), expected)
 
 
-def test_external_drift_equals_gstat():
+@ENGINES
+def test_external_drift_equals_gstat(engine):
     data, grid, expected = meuse("meuse"), meuse("meuse_grid"), meuse("uk_sqrtdist_exp_grid")
-    kriging = GlobalKriging(places(data), EXPONENTIAL, trend=data["sqrtdist"])
+    kriging = engine(places(data), EXPONENTIAL, 0.0, data["sqrtdist"])
     prediction = kriging.solve(data["logzn"]).predict(places(expected), drift0=grid["sqrtdist"])
     assert_same(prediction, expected)
 
@@ -206,3 +223,79 @@ def test_gstools_says_the_same_with_errors_of_each_datum():
     ours = GlobalKriging(xy, covariance, error).solve(values).predict(xy0)
     np.testing.assert_allclose(ours.mean, mean, rtol=1e-9)
     np.testing.assert_allclose(ours.variance, variance, rtol=1e-9)
+
+
+def drifting(seed):
+    """Wells with errors and a covariate, places with the covariate, and two ways to krige them."""
+    rng = np.random.default_rng(seed)
+    xy, xy0 = rng.uniform(0, 4e5, (90, 2)), rng.uniform(0, 4e5, (60, 2))
+
+    def drift(at):
+        return np.sin(at[:, 0] / 9e4) + at[:, 1] / 4e5
+
+    error, values = np.exp(rng.normal(1.4, 0.7, 90)), 40 + 6 * drift(xy) + rng.normal(0, 5, 90)
+    covariance = Covariance.from_natural("exponential", 25.0, 3e4, 4.0)
+    given = (xy, covariance, error, drift(xy))
+    ours = [
+        engine.solve(values).predict(xy0, drift(xy0))
+        for engine in (GlobalKriging(*given), TileKriging(*given, nearest=90))
+    ]
+    return xy, xy0, values, error, drift(xy), drift(xy0), ours
+
+
+@pytest.mark.parametrize("seed", [1, 2, 3])
+def test_gstools_says_the_same_with_drift_and_errors(seed):
+    gstools = pytest.importorskip("gstools")
+    xy, xy0, values, error, drift, drift0, ours = drifting(seed)
+    theirs = gstools.krige.Krige(
+        gstools.Exponential(dim=2, var=25.0, len_scale=3e4, nugget=4.0),
+        xy.T,
+        values,
+        ext_drift=drift,
+        cond_err=4.0 + error,
+        pseudo_inv=False,
+    )
+    mean, variance = theirs(xy0.T, ext_drift=drift0)
+    for told in ours:
+        np.testing.assert_allclose(told.mean, mean, rtol=1e-9)
+        np.testing.assert_allclose(told.variance, variance, rtol=1e-9)
+
+
+GSTLEARN = """
+import json, sys
+import numpy as np
+import gstlearn as gl
+given = {name: np.array(column) for name, column in json.load(sys.stdin).items()}
+table = np.column_stack([given["xy"], given["values"], given["error"], given["drift"]])
+names, roles = ["x", "y", "z", "v", "f"], ["x1", "x2", "z1", "v1", "f1"]
+wells = gl.Db.createFromSamples(len(table), gl.ELoadBy.SAMPLE, table.ravel(), names, roles)
+table = np.column_stack([given["xy0"], given["drift0"]])
+cells = gl.Db.createFromSamples(
+    len(table), gl.ELoadBy.SAMPLE, table.ravel(), ["x", "y", "f"], ["x1", "x2", "f1"]
+)
+model = gl.Model.createFromParam(gl.ECov.EXPONENTIAL, range=3e4, sill=25.0, flagRange=False)
+model.addCovFromParam(gl.ECov.NUGGET, sill=4.0)
+model.setDriftIRF(0, 1)
+gl.kriging(wells, cells, model, gl.NeighUnique.create(), True, True, False)
+names = cells.getAllNames()
+columns = [np.array(cells.getColumn(next(n for n in names if k in n))) for k in ("estim", "stdev")]
+print("told " + json.dumps([column.tolist() for column in columns]))
+"""
+
+
+@pytest.mark.parametrize("seed", [1, 2, 3])
+def test_gstlearn_says_the_same_with_drift_and_errors(seed):
+    """In a process of its own: it can take Python down with it."""
+    pytest.importorskip("gstlearn")
+    xy, xy0, values, error, drift, drift0, ours = drifting(seed)
+    names = ("xy", "xy0", "values", "error", "drift", "drift0")
+    columns = (xy, xy0, values, error, drift, drift0)
+    given = json.dumps({n: c.tolist() for n, c in zip(names, columns, strict=True)})
+    run = subprocess.run(
+        [sys.executable, "-c", GSTLEARN], input=given, capture_output=True, text=True, check=True
+    )
+    line = next(line for line in run.stdout.splitlines() if line.startswith("told "))
+    mean, sigma = np.array(json.loads(line.removeprefix("told ")))
+    for told in ours:
+        np.testing.assert_allclose(told.mean, mean, rtol=1e-9)
+        np.testing.assert_allclose(told.variance, sigma**2, rtol=1e-9)

@@ -17,10 +17,11 @@ NUMERICS = [
     path
     for path in MODULES
     if re.fullmatch(
-        r"geostat/(?!engine_pykrige|engines).*|heatflow/(joint|reduction)\.py|"
-        r"corrections/(?!__init__|gather|stage).*|rock/(?!beds|resistances).*|"
+        r"geostat/(?!engine_pykrige|engines).*|heatflow/(joint|points|reduction)\.py|"
+        r"corrections/(?!__init__|gather|stage|calibration/stage|judging/(?!regional_line|verdicts)).*|"
+        r"rock/(?!beds|resistances).*|"
         r"conductivity/(heat_production|mixing|conditions|porosity)\.py|"
-        r"(datums|geotherm|rebuild|trajectory)\.py",
+        r"wellpages/(cooling|scale)\.py|(datums|geotherm|rebuild|trajectory)\.py",
         path.relative_to(LIBRARY).as_posix(),
     )
 ]

@@ -91,14 +91,15 @@ def test_matches_an_independent_integration():
 
 @settings(max_examples=30, deadline=None)
 @given(
-    st.lists(st.floats(20.0, 3000.0), min_size=2, max_size=6, unique=True),
+    # in whole millimetres: depths closer than that are one
+    st.lists(st.integers(20_000, 3_000_000), min_size=2, max_size=6, unique=True),
     st.floats(0.02, 0.12),
     st.floats(0.0, 0.5),
 )
 def test_resistance_adds_up_and_temperature_rises(depths, flow, phi):
     columns = _columns([3000.0], [0.0, 800.0], [2.5, 4.0], [SED, SED], [phi, phi])
     integrals = integrate(columns, np.array([10.0]), np.array([flow]))
-    z = np.sort(depths)
+    z = np.sort(depths) / 1000.0
     resistance, radiogenic = at_depths(columns, integrals, np.zeros(len(z), int), z)
     temperature = 10 + flow * resistance.sum(1) - radiogenic.sum(1)
     assert np.all(np.diff(temperature) > 0) and temperature[0] > 10

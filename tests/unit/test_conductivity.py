@@ -39,8 +39,10 @@ def test_laws_give_back_the_value_at_25(name, k):
 
 
 @pytest.mark.parametrize("name", conditions.LAW_NAMES)
-@given(k=st.floats(2.0, 8.0))
-def test_good_conductors_never_conduct_better_when_hot(name, k):
+@given(data=st.data())
+def test_good_conductors_never_conduct_better_when_hot(name, data):
+    turning = {"kola2008": 2.23}.get(name, 2.0)  # b/a: below, the law as published rises
+    k = data.draw(st.floats(turning, 8.0))
     values = conditions.LAWS[name](k, np.linspace(0.0, 300.0, 61))
     assert np.all(np.diff(values) <= 1e-12)
     assert np.all(values > 0.3 * k)

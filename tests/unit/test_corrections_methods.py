@@ -1,5 +1,6 @@
 """Promises that every registered method keeps, and the tests by which Horner refuses."""
 
+import re
 from dataclasses import replace
 from typing import get_args
 
@@ -18,6 +19,7 @@ from basinheat.corrections.methods.harrison1983 import correction_k as harrison_
 from basinheat.corrections.methods.horner import horner_time
 from basinheat.corrections.methods.kehle_gregory import correction_k as kehle_k
 from basinheat.corrections.methods.time_lines import fit_line
+from basinheat.corrections.stage import prepare
 from basinheat.corrections.trend import RegionalTrend
 from basinheat.settings.heat import Correction, Method, Region
 
@@ -34,16 +36,37 @@ def sets_of(method):
     rows = [
         {"depth_m": top + 800.0, "temperature_degc": 57.0, "since_circulation_h": 8.0},
         {"depth_m": top + 800.0, "temperature_degc": 58.3, "since_circulation_h": 14.0},
-        {"depth_m": top + 300.0, "temperature_degc": 41.0, "since_circulation_h": 8.0},
+        {
+            "depth_m": top + 300.0,
+            "temperature_degc": 41.0,
+            "since_circulation_h": 8.0,
+            "drilling_h": 6.0,
+        },
         {"depth_m": top, "temperature_degc": 33.0},
     ]
     readings = table_of([row | {"kind": method.kind} for row in rows])
     return gather(readings, wells_of("A"), Correction()).sets[method.kind]
 
 
+def six_pairs():
+    """What six wells teach whose readings are 9 to 14 K below their equilibrium logs."""
+    places = [{"well": f"W{i}", "depth_m": 1000.0 + 500.0 * i} for i in range(6)]
+    direct = [
+        place | {"kind": "equilibrium", "temperature_degc": 10.0 + 0.03 * place["depth_m"]}
+        for place in places
+    ]
+    muddy = [
+        place | {"temperature_degc": 1.0 - i + 0.03 * place["depth_m"]}
+        for i, place in enumerate(places)
+    ]
+    wells = wells_of(*(place["well"] for place in places))
+    return prepare(table_of(direct + muddy), wells, Correction()).context.calibration
+
+
 def at_home(method):
-    """The context of wells in the region of the method."""
-    return replace(CONTEXT, region=method.regions[0] if method.regions else None)
+    """The context of wells in the region of the method, pairs among them."""
+    region = method.regions[0] if method.regions else None
+    return replace(CONTEXT, region=region, calibration=six_pairs())
 
 
 def test_the_config_knows_the_methods():
@@ -65,6 +88,14 @@ def test_what_a_method_says_of_itself(method):
     assert 1900 < reference.year < 2100
     assert all([reference.author, reference.title, reference.equation, reference.status])
     assert all([method.title, method.validity, method.uncertainty.source])
+
+
+@every_method
+def test_what_a_method_prints_needs_no_other_document(method):
+    """README and report print these: the reason itself, and not where developers noted it."""
+    said = [method.title, method.validity, *method.reasons, *vars(method.reference).values()]
+    said += [method.uncertainty.source, method.uncertainty.known_bias]
+    assert not [text for text in said if re.search(r"METHODS|\bA\d+\b", str(text))]
 
 
 @every_method

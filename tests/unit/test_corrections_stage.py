@@ -157,8 +157,16 @@ def test_the_preferred_kind_counts_and_the_others_inform():
     assert rows.loc[2000.0, "variance_class"] == "recovery:single"
     assert rows.loc[[900.0, 2008.0], "loading_surface_temperature"].tolist() == [0.0, 0.0]
     assert rows.loc[2008.0, "loading_method:dst"] == 0.5
-    assert "dst: treats dst readings" in rows.loc[1200.0, "passed_over"]
+    assert rows["passed_over"].tolist() == [""] * 5, "methods of another kind are no news"
     assert done.rejected.empty
+
+
+def test_readings_of_a_kind_the_order_knows_nothing_of_are_told_so():
+    rows = [{"kind": "dst", "temperature_degc": 72.0}, {"temperature_degc": 60.0}]
+    done = correct(table_of(rows), wells_of("A"), Correction(order=["horner"]))
+    told = done.rejected["sentence"].tolist()
+    assert any("none treats dst readings" in text and "Add dst to it" in text for text in told)
+    assert any("horner: fewer than 2 timed readings" in text for text in told)
 
 
 def test_ranks_of_one_kind_do_not_compete():

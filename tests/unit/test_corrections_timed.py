@@ -18,7 +18,10 @@ from basinheat.corrections.methods.time_lines import fit_line
 from basinheat.settings.heat import Correction
 
 PLOTS = (HORNER, GENERALISED, CYLINDER, AT_ONCE, BRENNAND)
-TIMED = [*(plot.name for plot in PLOTS), "bullard1947", "waples2001", "waples2004"]
+TIMED = [
+    *(plot.name for plot in PLOTS),
+    *("bullard1947", "lachenbruch_brewer1959", "waples2001", "waples2004"),
+]
 RADIUS_M, KAPPA = 0.108, 1e-6
 every_plot = pytest.mark.parametrize("plot", PLOTS, ids=[plot.name for plot in PLOTS])
 
@@ -36,6 +39,7 @@ def basin():
     readings = made.readings.copy()
     mud = np.where(np.arange(len(readings)) % 2 == 0, readings["temperature_degc"] - 15.0, np.nan)
     readings["mud_temperature_degc"] = mud
+    readings["drilling_h"] = 6.0 + readings["circulation_h"].fillna(4.0)
     deep = readings["depth_m"] > 3000.0
     readings.loc[deep, "depth_m"] = readings.loc[deep, "depth_m"] + 1200.0
     return readings, made.wells
@@ -157,6 +161,27 @@ def test_bullard_refuses(changes, surface, reason):
     wells = wells_of("A", surface_degc=surface)
     done = correct(single(**changes), wells, order_of("bullard1947"))
     assert done.rejected["sentence"].str.contains(reason).tolist() == [True]
+
+
+def test_long_drilling_cools_more_than_its_last_circulation():
+    """Against simulated radial conduction, the wall at mud temperature as long as drilling went."""
+    drilled, since, mud, formation = 60.0, 24.0, 45.0, 90.0
+    left = left_on_axis(drilled, np.array([since]), RADIUS_M, KAPPA, 1.0, 1.0)[0]
+    reading = formation - left * (formation - mud)
+    row = {"temperature_degc": reading, "since_circulation_h": since, "drilling_h": drilled}
+    long, short = (
+        correct(single(**row), wells_of("A"), order_of(name)).estimates.iloc[0]
+        for name in ("lachenbruch_brewer1959", "bullard1947")
+    )
+    assert long["temperature_degc"] == pytest.approx(formation, abs=0.03 * (formation - reading))
+    assert formation - short["temperature_degc"] > 0.3 * (formation - reading)
+
+
+def test_without_a_time_of_drilling_another_method_must_serve():
+    done = correct(single(), wells_of("A"), order_of("lachenbruch_brewer1959"))
+    assert done.rejected["sentence"].str.contains("time of drilling is not noted").tolist() == [
+        True
+    ]
 
 
 def test_bullard_says_what_it_assumed_and_is_surer_with_noted_mud():

@@ -37,6 +37,23 @@ def test_all_pairs_with_errors_and_sources_taken_out(monkeypatch):
     np.testing.assert_allclose(found.gamma, gamma, rtol=1e-9)
 
 
+@pytest.mark.parametrize("estimator", ["cressie", "matheron"])
+@pytest.mark.parametrize("edges", [np.linspace(0, 6e4, 8), np.array([500.0, 900, 7e3, 8e3, 2e5])])
+def test_the_compiled_loop_sums_the_same_pairs(monkeypatch, estimator, edges):
+    rng = np.random.default_rng(5)
+    xy = np.vstack([rng.uniform(0, 1e5, (600, 2)), rng.normal(3e4, 300, (200, 2))])
+    xy[5] = xy[3]  # no distance at all
+    xy[7] = xy[3] + [edges[-1], 0]  # just in reach
+    errors, loadings = rng.uniform(1, 9, 800), rng.normal(size=(800, 2))
+    given = (xy, rng.normal(0, 9, 800), errors, None, edges, estimator, loadings)
+    plain = experimental(*given)
+    monkeypatch.setattr(pairs_module, "_COMPILED", 0)
+    fast = experimental(*given)
+    np.testing.assert_array_equal(fast.pairs, plain.pairs)
+    np.testing.assert_allclose(fast.lag_m, plain.lag_m, rtol=1e-12)
+    np.testing.assert_allclose(fast.gamma, plain.gamma, rtol=1e-9)
+
+
 @pytest.mark.parametrize("estimator", ["cressie", "matheron", "dowd"])
 def test_a_known_truth_on_average(estimator):
     truth, rng, ratios = Covariance("exponential", 20.0, 6e4, 5.0), np.random.default_rng(1), []

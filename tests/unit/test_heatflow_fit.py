@@ -13,8 +13,14 @@ LN_STD = 0.12
 BIAS_STD = 3.0
 
 
-def draw(seed, n_wells=70, bias=0.0, ln_k=0.0, paired=25):
-    """Wells with one biased log each, some with an equilibrium log, over shale of unknown k."""
+PUBLISHED_STD = 4.0
+
+
+def draw(seed, n_wells=70, bias=0.0, ln_k=0.0, paired=25, published=0):
+    """Wells with one biased log each, some with an equilibrium log, over shale of unknown k.
+
+    Published heat flow lies 500 m beside the first wells, right but for its own error.
+    """
     rng = np.random.default_rng(seed)
     xy = rng.uniform(0.0, 120_000.0, (n_wells, 2))
     field = FIELD.between(xy, xy) + FIELD.nugget * np.eye(n_wells)
@@ -73,7 +79,27 @@ def draw(seed, n_wells=70, bias=0.0, ln_k=0.0, paired=25):
             "unit": ["K", "ln"],
         }
     )
-    fitted = heatflow.fit(estimates, rock, sources, wells, ("matern15",), 0.5)
+    points = tables.HeatFlowPoints.conform(
+        pd.DataFrame(
+            {
+                "well": [f"P{i:03d}" for i in range(published)],
+                "easting_m": xy[:published, 0] + 500.0,
+                "northing_m": xy[:published, 1],
+                "heat_flow_mw_m2": flow[:published] + rng.normal(0.0, PUBLISHED_STD, published),
+                "heat_flow_std_mw_m2": PUBLISHED_STD,
+            }
+        )
+    )
+    fitted = heatflow.fit(
+        estimates,
+        rock,
+        sources,
+        wells,
+        ("matern15",),
+        0.5,
+        published=points,
+        published_shared_share=0.02,
+    )
     return fitted, flow, true
 
 
@@ -103,6 +129,29 @@ def test_the_level_of_one_conductivity_cannot_be_known_from_temperatures():
     assert shared.median() == pytest.approx(LN_STD, rel=0.25)
     offset = (fitted.heat_flow["heat_flow_mw_m2"].to_numpy() - flow).mean()
     assert abs(offset) < 2.5 * fitted.heat_flow["heat_flow_shared_std_mw_m2"].median()
+
+
+def test_published_heat_flow_tells_the_level_of_conductivity():
+    """Thirty places of 4 mW/m2 know the level of q within 2 %, and so that of k."""
+    alone, flow, _ = draw(seed=3, ln_k=0.15)
+    helped, _, _ = draw(seed=3, ln_k=0.15, published=30)
+    level = [f.sources.set_index("source").loc["conductivity:shale"] for f in (alone, helped)]
+    assert level[1]["std"] < 0.4 * level[0]["std"]
+    assert abs(level[1]["mean"] - 0.15) < 2.5 * level[1]["std"]
+    own = helped.heat_flow[helped.heat_flow["method"] != "published"]
+    offset = (own["heat_flow_mw_m2"].to_numpy() - flow).mean()
+    assert abs(offset) < 2.5 * own["heat_flow_shared_std_mw_m2"].median() < 5.0
+
+
+def test_published_heat_flow_is_data_of_the_map():
+    helped, _, _ = draw(seed=4, published=30)
+    points = helped.map_points.set_index("well")
+    given = points.loc[points.index.str.startswith("P")]
+    assert len(given) == 30
+    np.testing.assert_allclose(given["value_std"], PUBLISHED_STD)
+    assert (given["loading_conductivity:shale"] == 0.0).all()
+    assert (given["loading_heat_flow:published"] > 0.0).all()
+    assert (helped.heat_flow["method"] == "published").sum() == 30
 
 
 def test_own_sigma_of_heat_flow_is_honest():

@@ -333,3 +333,11 @@ def test_norwegian_shelf():
     assert (~vertical).sum() == pytest.approx(184, abs=2)
     gradient = 1000.0 * (out.readings["temperature_degc"] - 4.0) / out.readings["depth_m"]
     assert gradient[vertical].median() == pytest.approx(36.9, abs=0.2)
+
+
+def test_a_place_that_no_map_holds_is_refused_among_few_wells_too(tmp_path):
+    """No map reaches farther than twice round the Earth (common practice, no source)."""
+    wells = "A,500000,6000000,100,105,,\nB,1e308,6000000,100,105,,\nC,500000,-2e8,100,105,,\n"
+    out = prepare(tmp_path, base=False, wells=wells, readings=f"A,2005,{degc(2005)},,,,,,\n")
+    assert codes(out, table="wells") == ["coordinates_impossible"] * 2
+    assert out.wells["well"].tolist() == ["A"]

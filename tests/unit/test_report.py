@@ -13,8 +13,17 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from basinheat.delivery import style
-from basinheat.report import attention, basis, captions, mapfigures, overview, summary
-from basinheat.report.sheet import LONGEST, number, percent, shown
+from basinheat.report import (
+    attention,
+    basis,
+    captions,
+    comparison,
+    mapfigures,
+    overview,
+    summary,
+    template,
+)
+from basinheat.report.sheet import LONGEST, Sheet, number, percent, shown
 
 
 @pytest.fixture(scope="module")
@@ -245,3 +254,82 @@ def test_matplotlib_is_loaded_by_drawing_only():
     code = "import sys, basinheat.report.page; sys.exit('matplotlib' in sys.modules)"
     assert subprocess.run([sys.executable, "-c", f"import sys; sys.path[:0] = {sys.path}; {code}"],
                           check=False).returncode == 0  # fmt: skip
+
+
+# Corrections compared
+
+
+def test_a_line_that_misses_the_surface_is_told_first_and_only_of_what_is_mapped(run):
+    """Raw readings always point too low: news only where the final temperatures do."""
+    for group, told in (("raw", 0), ("final", 1)):
+        table = run.intercepts.assign(
+            alarm=np.where(run.intercepts["group"] == group, "5.0 K too cold at the surface", ""),
+            intercept_k=-5.0,
+        )
+        found = attention.points(replace(run, intercepts=table))
+        assert len(found) - len(attention.points(run)) == told
+        rows = comparison.intercepts_sheet(replace(run, intercepts=table)).rows
+        assert [row[-1] for row in rows].count("too cold") == 1
+
+
+def test_every_method_has_its_line_and_its_share(run):
+    """Horner treats one set in four of the made-up run; the chosen method is no line of its own."""
+    rows = {row[0]: row[1:] for row in comparison.comparison_sheet(run).rows}
+    assert set(rows) == {"horner", "conductive_recovery"}
+    assert rows["horner"][:3] == ["25 %", "+13.0", "+3.0"]
+    assert len(comparison.comparison_picture(run).panels) == 1
+    empty = replace(run, correction_summary=run.correction_summary.head(0))
+    assert comparison.comparison_picture(empty).panels == []
+    assert comparison.comparison_sheet(empty).rows == []
+
+
+def test_the_order_to_try_names_a_method_that_is_not_in_it(run):
+    """Horner before the mud-cooled method of the present order, behind the equilibrium logs."""
+    assert comparison.example_order(run) == ["equilibrium", "horner", "conductive_recovery"]
+
+
+def anchored(**rows):
+    """Return differences from logs: method to median difference, spread and wells."""
+    lines = [("equilibrium", name, 9, wells, off, 1.0, spread) for name, (off, spread, wells)
+             in rows.items()]  # fmt: skip
+    names = ["anchor", "method", "n_pairs", "n_wells", "difference_k", "difference_std_k"]
+    return pd.DataFrame(lines, columns=[*names, "spread_k"]).assign(chosen_difference_k=0.0)
+
+
+@pytest.mark.parametrize(
+    ("logs", "lead"),
+    [
+        ({"horner": (5.0, 1.0, 9), "forster1997": (1.0, 2.0, 9)}, "forster1997"),
+        ({"horner": (1.0, 1.0, 9), "forster1997": (-2.0, 1.0, 9)}, "horner"),
+        ({"horner": (5.0, 1.0, 9), "forster1997": (0.0, 1.0, 2)}, "horner"),
+        ({}, "forster1997"),
+    ],
+)
+def test_the_order_to_try_is_led_by_what_agrees_with_the_logs(run, logs, lead):
+    """Of two wells with logs nothing is said; without logs the least σ leads. Hand-made numbers."""
+    table = run.correction_summary
+    rows = table[table["method"].eq("horner") & table["top_m"].isna()]
+    other = rows.assign(method="forster1997", total_std_k=0.1 + 0.0 * rows["total_std_k"])
+    changed = replace(
+        run, correction_summary=pd.concat([table, other]), anchor_differences=anchored(**logs)
+    )
+    assert comparison.example_order(changed) == ["equilibrium", lead, "conductive_recovery"]
+
+
+def test_names_of_the_config_are_set_as_code():
+    page = template.environment().from_string(
+        '{% from "parts.html.j2" import sheet %}{{ sheet(table) }}'
+    )
+    table = Sheet("T", ["`method", "said"], [["horner: Horner <b>plot</b>", "a: b"], ["dst", ""]])
+    text = page.render(table=table)
+    assert "<td><code>horner</code>: Horner &lt;b&gt;plot&lt;/b&gt;</td>" in text
+    assert "<code>dst</code></td>" in text and "<td>a: b</td>" in text
+    assert ">method</th>" in text
+
+
+def test_parts_of_sigma_name_the_method_as_the_config_does(run):
+    rows = comparison.sigmas_sheet(run).rows
+    assert [row[0] for row in rows] == [
+        "horner", "conductive_recovery: mud-cooled, one timed reading",
+    ]  # fmt: skip
+    assert [row[5] for row in rows] == ["–", "1.20"]

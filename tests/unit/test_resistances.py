@@ -271,27 +271,39 @@ def test_no_layers_at_all_is_said():
     assert rocks.structure.groupby("well").size().min() == 12  # to the deepest reading
 
 
-def test_layers_that_cannot_be_are_told_and_left_out():
+@pytest.mark.parametrize(
+    "bad",
+    [
+        ("W00", 500.0, 400.0, "shale"),
+        ("W00", -50.0, 0.0, "shale"),
+        ("W01", 100.0, 300.0, "halite"),  # over another layer
+        ("W02", 3000.0, 3100.0, ""),
+    ],
+)
+def test_layers_that_ingest_would_have_refused_stop_the_stage(bad):
+    """Overlaps and thicknesses are the matter of ingest, which names file and line."""
     wells, layers, estimates = _basin()
-    bad = _layers(
-        [
-            ("W00", 500.0, 400.0, "shale"),
-            ("W00", -50.0, 0.0, "shale"),
-            ("W01", 100.0, 300.0, "halite"),
-            ("W02", 3000.0, 3100.0, ""),
-            ("elsewhere", 0.0, 100.0, "no such rock"),
-        ]
-    )
-    mixed = pd.concat([layers, bad], ignore_index=True)
+    mixed = pd.concat([layers, _layers([bad])], ignore_index=True)
+    with pytest.raises(RuntimeError, match=f"1 layers .*of well {bad[0]}"):
+        resistances.estimate(estimates, wells, mixed, COLD, FLOW)
+
+
+def test_layers_of_wells_that_are_not_mapped_do_not_matter():
+    wells, layers, estimates = _basin()
+    more = _layers([("elsewhere", 0.0, 100.0, "no such rock")])
+    mixed = pd.concat([layers, more], ignore_index=True)
     rocks = resistances.estimate(estimates, wells, mixed, COLD, FLOW)
     clean = resistances.estimate(estimates, wells, layers, COLD, FLOW)
-    assert sorted(rocks.rejected["code"]) == [
-        "layer_above_surface",
-        "layer_depths",
-        "layer_overlap",
-        "layer_without_rock",
-    ]
     pd.testing.assert_frame_equal(rocks.resistances, clean.resistances)
+
+
+def test_refused_layers_name_their_line():
+    wells, layers, estimates = _basin()
+    layers["source_file"], layers["source_line"] = "layers.csv", range(2, 2 + len(layers))
+    layers.loc[4, "lithology"] = "quixolite"
+    rocks = resistances.estimate(estimates, wells, layers, COLD, FLOW)
+    (told,) = rocks.rejected.itertuples()
+    assert (told.code, told.source_file, told.source_line) == ("lithology_unknown", "layers.csv", 6)
 
 
 def test_unknown_lithologies_are_told_at_once_and_can_be_mapped():
@@ -301,6 +313,8 @@ def test_unknown_lithologies_are_told_at_once_and_can_be_mapped():
         resistances.estimate(estimates, wells, layers, COLD, FLOW)
     assert "schiefer" in str(caught.value) and "Salz" in str(caught.value)
     assert "conductivity.lithologies" in str(caught.value)
+    # two of the three layers of each of nine wells
+    assert "18 of 27 layers (67%, more than 20% stops the run)" in str(caught.value)
     settings = Conductivity(
         temperature_law=False, lithologies={"schiefer": "shale", "salz": "halite"}
     )

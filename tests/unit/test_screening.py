@@ -3,6 +3,12 @@
 The rules are common practice (METHODS K); the cases are our own.
 """
 
+import re
+from io import StringIO
+from pathlib import Path
+
+import numpy as np
+import pandas as pd
 import pytest
 from ingest_case import HEIGHT, SURFACE, codes, degc, flags, prepare
 
@@ -216,6 +222,48 @@ def test_another_group_of_wells_far_away_is_kept(tmp_path):
     rows = "".join(f"F{i},{900000 + 9000 * i},6000000,100,105,,\n" for i in range(5))
     out = prepare(tmp_path, wells=rows)
     assert len(out.wells) == 21
+
+
+def readme_wells():
+    """Return the rows of the nine wells of the README's example."""
+    text = (Path(__file__).parents[2] / "README.md").read_text(encoding="utf-8")
+    table = re.search(r"```csv\n(well,x,y.*?)```", text, re.DOTALL).group(1)
+    return pd.read_csv(StringIO(table))
+
+
+def test_nine_wells_do_not_tell_which_of_them_is_far(tmp_path):
+    """W9 of the README's example lies 12 km from the next, which is no doubt of its place."""
+    rows = "".join(f"{w.well},{w.x},{w.y},100,105,,\n" for w in readme_wells().itertuples())
+    out = prepare(tmp_path, base=False, wells=rows)
+    assert len(out.wells) == 9 and not out.wells["flags"].str.contains("far_from_others").any()
+
+
+@pytest.mark.parametrize(("ring_km", "doubted"), [(12, False), (80, True)])
+def test_a_well_is_far_by_how_the_others_lie(tmp_path, ring_km, doubted):
+    """Wells of a usual basin lie 10 km apart (a square of 25); one more lies east of them."""
+    far = f"FAR,{540000 + 1000 * ring_km},6020000,100,105,,\n"
+    square = "".join(
+        f"S{i:02d},{500000 + 10000 * (i % 5)},{6000000 + 10000 * (i // 5)},100,105,,\n"
+        for i in range(25)
+    )
+    out = prepare(tmp_path, base=False, wells=square + far)
+    told = set(out.wells.loc[out.wells["flags"].str.contains("far_from_others"), "well"])
+    assert told == ({"FAR"} if doubted else set())
+
+
+@pytest.mark.parametrize("seed", range(4))
+@pytest.mark.parametrize("spread", [0.0, 1.0])
+def test_scattered_wells_are_not_far(tmp_path, seed, spread):
+    """Wells strewn without order, evenly or in heaps, hold no slip: hardly one in 60 is doubted."""
+    rng = np.random.default_rng(seed)
+    centre = rng.uniform(0.0, 1e5, (6, 2))[rng.integers(6, size=60)]
+    place = centre + rng.normal(0.0, 1.5e4, (60, 2)) * np.exp(spread * rng.normal(size=(60, 1)))
+    rows = "".join(
+        f"R{i:02d},{500000 + x:.0f},{6000000 + y:.0f},100,105,,\n" for i, (x, y) in enumerate(place)
+    )
+    out = prepare(tmp_path, base=False, wells=rows)
+    assert len(out.wells) == 60
+    assert out.wells["flags"].str.contains("far_from_others").sum() <= 1
 
 
 def test_no_coordinates_among_few_wells_are_doubted(tmp_path):

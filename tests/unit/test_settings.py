@@ -1,6 +1,7 @@
 """The config: complete settings per scenario, and the documents made from the models."""
 
 import copy
+import itertools
 import os
 from pathlib import Path
 
@@ -10,11 +11,13 @@ from pydantic import ValidationError
 
 from basinheat import documents
 from basinheat.errors import UserError
+from basinheat.screening.codes import READINGS, WELLS
 from basinheat.settings import document
 from basinheat.settings.columns import INPUT_COLUMNS, ONE_OF
 from basinheat.settings.files import input_files, input_tables, nearby, with_paths
 from basinheat.settings.load import OVERLAID, load_config, merged
 from basinheat.settings.model import Settings
+from basinheat.settings.wells import Screening
 
 ROOT = Path(__file__).parents[2]
 DEMO = ROOT / "config" / "config.yaml"
@@ -111,7 +114,7 @@ def test_a_fault_of_base_is_not_told_again_for_each_scenario(folder):
 
 def test_a_glob_finds_its_files_in_order(folder):
     for name in ("b.csv", "a.csv"):
-        (folder / name).write_text("well,depth,temperature\n", encoding="utf-8")
+        (folder / name).write_text("well,depth,temperature\nA,1000,40\n", encoding="utf-8")
     settings = load(folder, inputs={"readings": [{"file": "[ab].csv"}]})["base"]
     names = [Path(path).name for path in input_tables(settings.inputs, folder)]
     assert names == ["a.csv", "b.csv", "wells.csv"]
@@ -176,3 +179,59 @@ def test_the_readme_of_the_config_is_in_step():
     assert document.refreshed(text) == text, (
         "make it anew: PYTHONPATH=scripts python -m basinheat.settings.document config/README.md"
     )
+
+
+def test_every_flag_of_screening_is_explained_with_its_severity_and_setting():
+    """Numbers are the settings' defaults; dots stand for what only a record can say."""
+    lines = {line.split("`")[1]: line for line in document.flags_table().splitlines()[2:]}
+    assert set(lines) == {*READINGS, *WELLS}
+    assert not any("{" in line for line in lines.values())
+    high = Screening().gradient_high_k_km
+    assert (
+        f"| doubt | the gradient from the surface is … K/km, above {high:g} K/km"
+        in (lines["gradient_high"])
+    )
+    assert "| readings | note |" in lines["old_reading"]
+
+
+def test_an_alias_inside_what_it_names_is_a_fault():
+    """YAML allows both: a value that holds itself, and a few lines that stand for a billion."""
+    endless = yaml.safe_load("{run: &a [*a], crs: x}")
+    tens = ", ".join(["*{0}"] * 10)
+    lines = [f"{b}: &{b} [{tens.format(a)}]" for a, b in itertools.pairwise("abcdefghij")]
+    billion = yaml.safe_load("a: &a [1, 1]\n" + "\n".join(lines))
+    for raw in (endless, billion):
+        with pytest.raises(UserError, match=r"the config: it has more than .* alias"):
+            load_config(raw, "c.yaml", ".")
+
+
+@pytest.mark.parametrize("form", ["%", "%Q", "%Y %Y", "x", "%d.%m.", ""])
+def test_a_form_of_dates_must_hold_a_year_that_can_be_read(form):
+    table = {"file": "r.csv", "date_format": form}
+    raw = SMALLEST | {"inputs": SMALLEST["inputs"] | {"readings": [table]}}
+    with pytest.raises(
+        UserError, match=r"readings\[0\].date_format: no date can be read"
+    ) as caught:
+        load_config(raw, "c.yaml", ".", check_files=False)
+    assert len(caught.value.faults) == 1
+
+
+@pytest.mark.parametrize("form", ["%m/%d/%Y", "%d-%b-%y", "%Y", "%m/%Y", "%Y%m%d %H:%M"])
+def test_usual_forms_of_dates(form):
+    table = {"file": "r.csv", "date_format": form}
+    raw = SMALLEST | {"inputs": SMALLEST["inputs"] | {"readings": [table]}}
+    settings = load_config(raw, "c.yaml", ".", check_files=False)["base"]
+    assert settings.inputs.readings[0].date_format == form
+
+
+def test_a_fault_is_one_visible_line_whatever_the_names_in_it():
+    """A break would make two lines of it; U+202E turns the rest of a line around (Unicode 9)."""
+    faults = UserError(["a\nb\r\x00: c\u202e\u2028 é \ud800"], heading="x\ny").faults
+    assert faults == ["a\\nb\\r\\x00: c\\u202e\\u2028 é \\ud800"]
+    assert str(UserError("one", heading="x\ny")).splitlines() == ["x\\ny", "  one"]
+
+
+def test_a_crs_that_no_file_can_hold_is_a_fault():
+    raw = SMALLEST | {"crs": yaml.safe_load('"\\ud800"')}
+    with pytest.raises(UserError, match=r"crs: .*\\ud800"):
+        load_config(raw, "c.yaml", ".")

@@ -307,10 +307,12 @@ def test_every_kind_of_dirt_is_there_and_where_the_list_says(demo):
     expected = {
         "celsius_in_fahrenheit_column", "metres_in_feet_column", "text_in_number",
         "negative_depth", "below_surface_temperature", "blank_temperature", "missing_code",
-        "deeper_than_total_depth", "too_hot", "well_name_padded", "zero_time", "text_in_time",
+        "deeper_than_total_depth", "too_hot", "well_name_padded", "zero_time",
+        "missing_word_in_time",
         "blank_time", "copied_reading", "duplicate_row", "unknown_well", "unknown_lithology",
         "base_above_top", "well_twice_nearby", "well_twice_far", "longitude_latitude_swapped",
-        "missing_datum", "blank_coordinate", "awkward_name", "survey_lost",
+        "missing_datum", "blank_coordinate", "awkward_name", "survey_lost", "missing_word",
+        "approximate_number",
     }  # fmt: skip
     assert set(demo.dirt.code) == expected
     assert set(demo.dirt.expected) == {"rejected", "merged", "noticed", "kept"}

@@ -111,20 +111,30 @@ NO_MAP = "rejected.csv in the folder wells of the results says"
 ERRORS = {
     "an empty file": ({"wells": ""}, ["wells.csv: line 1 holds no headers", "skip_lines"]),
     "blank lines only": ({"readings": "\n\n"}, ["readings.csv: line 1 holds no headers"]),
-    "wells: headers only": ({"wells": WELLS}, ["no well is left to map", "inputs.wells"]),
-    "readings: headers only": ({"readings": READINGS}, ["usable temperature: 0", NO_MAP]),
-    "another delimiter": (
-        {"wells": GOOD_WELLS.replace(",", ";")},
-        ["inputs.wells[0].columns: well is missing", "wells.csv has", "delimiter: ';'"],
+    "wells: headers only": (
+        {"wells": WELLS}, ["inputs.wells[0].file:", "wells.csv has headers and no rows"],
     ),
-    "a web page": ({"wells": HTML}, ["wells.csv has the headers", "<!DOCTYPE html>", "columns"]),
-    "no text at all": (
+    "readings: headers only": (
+        {"readings": READINGS},
+        ["inputs.readings[0].file:", "readings.csv has headers and no rows"],
+    ),
+    "a delimiter that must be stated": (
+        {"wells": GOOD_WELLS.replace(",", "^")},
+        ["inputs.wells[0].columns: well is missing", "wells.csv has the headers", "well^x^y"],
+    ),
+    "a web page": (
+        {"wells": HTML}, ["inputs.wells[0].file:", "wells.csv: is a web page", "as CSV"],
+    ),
+    "a workbook named as text": (
         {"readings": b"PK\x03\x04" + bytes(range(256))},
-        ["inputs.readings[0].columns: well is missing", "readings.csv has"],
+        ["inputs.readings[0].file:", "readings.csv: is no text table", "Excel", ".xlsx"],
+    ),
+    "no text at all": (
+        {"readings": bytes(range(256))}, ["inputs.readings[0].file:", "readings.csv", "binary"],
     ),
     "a header twice": (
         {"readings": GOOD_READINGS.replace("log_run", "depth", 1)},
-        ['readings.csv: the header "depth" stands there 2 times', "Rename"],
+        ["inputs.readings[0].columns.depth:", 'readings.csv has "depth" 2 times', "rename"],
     ),
     "all temperatures missing": (
         {"readings": readings(lambda i: f"N{i:02d},2000,-999.25,,,,,,")},
@@ -188,6 +198,7 @@ def renamed(text):
 # The files, wells that remain, and all rows of the ledger.
 LEDGERS = {
     "nothing bad": ({}, 16, {}),
+    "another delimiter": ({"wells": GOOD_WELLS.replace(",", ";")}, 16, {}),
     "UTF-16": ({"wells": GOOD_WELLS.encode("utf-16")}, 16, {}),
     "lines that end as on old machines": ({"readings": GOOD_READINGS.replace("\n", "\r")}, 16, {}),
     "text in a coordinate": (
@@ -295,12 +306,13 @@ def run(folder, files):
 def test_a_fault_of_a_whole_file_ends_the_run_before_it_begins(tmp_path):
     done = run(tmp_path, {"wells": HTML})
     assert done.returncode == 1
-    assert "bad.yaml is not valid:\n  inputs.wells[0].columns: well is missing" in done.stderr
+    assert "bad.yaml is not valid:\n  inputs.wells[0].file: " in done.stderr
+    assert "wells.csv: is a web page" in done.stderr
     assert "Traceback" not in done.stdout + done.stderr
     assert not (tmp_path / "results").exists()
 
 
-@pytest.mark.parametrize("name", ["wells: headers only", "all temperatures missing"])
+@pytest.mark.parametrize("name", ["readings of unknown wells only", "all temperatures missing"])
 def test_files_of_which_nothing_is_left_end_in_one_line(tmp_path, name):
     files, _ = ERRORS[name]
     done = run(tmp_path, files)

@@ -27,7 +27,8 @@ def differing(one, other):
 
 def test_the_delivery_is_complete(plain):
     names = set(digests(plain))
-    assert {f"{RUN}.gpkg", "report.html", "README.txt", "rejected.csv", "manifest.json"} <= names
+    assert {f"{RUN}.gpkg", "report.html", "wells.html", "README.txt"} <= names
+    assert {"rejected.csv", "manifest.json"} <= names
     assert {"rasters/heat_flow.tif", "rasters/heat_flow_std.tif", "rasters/status.tif"} <= names
     assert not [name for name in names if name.endswith(".part")]
 
@@ -80,7 +81,7 @@ def test_a_killed_run_resumes_to_the_same_bytes(plain, tmp_path):
 def test_a_delivery_names_no_place_and_no_person(plain):
     """Texts of the delivery hold no path of this machine, no user, no clock time."""
     home = os.path.expanduser("~")
-    for name in ("report.html", "README.txt", "manifest.json", "rejected.csv"):
+    for name in ("report.html", "wells.html", "README.txt", "manifest.json", "rejected.csv"):
         text = (plain / name).read_text(encoding="utf-8")
         assert str(plain.parents[3]) not in text, name
         assert str(ROOT) not in text, name

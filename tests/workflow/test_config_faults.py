@@ -63,7 +63,17 @@ FAULTS = {
         ("kriging",), {"variogram": {"pinned": "wells.csv"}}, "kriging.variogram.pinned: wells.csv",
     ),
     "a word for a list": (
-        ("correction",), {"order": "horner"}, 'correction.order: must be a list (got "horner")',
+        ("correction",),
+        {"order": "horner"},
+        'correction.order: must be a list (got "horner"); write [horner]',
+    ),
+    "a file for a list": (
+        ("inputs", "wells"),
+        "wells.csv",
+        'inputs.wells: must be a list (got "wells.csv"); write [{file: wells.csv}]',
+    ),
+    "an entry for a list": (
+        ("inputs", "wells"), {"file": "wells.csv"}, "inputs.wells: must be a list (got {",
     ),
     "an empty list": (("correction",), {"order": []}, "correction.order: needs at least 1 entry"),
     "negative": (("maps",), {"cell_size_m": -500}, "maps.cell_size_m: must be positive (got -500)"),
@@ -102,9 +112,9 @@ FAULTS = {
         {"model": "column"},
         "surface_temperature.model: column needs surface_temperature in inputs.wells[0].columns",
     ),
-    "a name that is no name": (("run",), "../up", 'run: must match ^[a-z0-9][a-z0-9_]{0,39}$'),
+    "a name that is no name": (("run",), "../up", "such as my_wells_2026"),
     "a scenario's name": (
-        ("scenarios",), {"No Good": {}}, "scenarios.No Good: must match ^[a-z0-9]",
+        ("scenarios",), {"No Good": {}}, "scenarios.No Good: must be small letters, digits",
     ),
     "a scenario called base": (("scenarios",), {"base": {}}, "scenarios.base: base is the config"),
     "a scenario over shared things": (

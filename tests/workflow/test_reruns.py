@@ -12,15 +12,23 @@ AFTER_CORRECTION = {
     "fit_sources",
     "fit_gradients",
     "krige_heat_flow",
+    "compare_corrections",
     "krige_conductivity",
     "derive_maps",
     "cross_validate",
     "write_rasters",
     "write_geopackage",
     "write_report",
+    "write_well_pages",
     "write_manifest",
 }
-AFTER_COLUMNS = {"write_rasters", "write_geopackage", "write_report", "write_manifest"}
+AFTER_COLUMNS = {
+    "write_rasters",
+    "write_geopackage",
+    "write_report",
+    "write_well_pages",
+    "write_manifest",
+}
 
 
 class Project:
@@ -89,7 +97,17 @@ def test_another_correction_runs_from_the_correction_on(project):
 
 def test_another_judgement_changes_no_map(project):
     project.setting("validation", neighbours=5)
-    assert project.would_run() == {"cross_validate", "write_report", "write_manifest"}
+    assert project.would_run() == {
+        "cross_validate",
+        "write_report",
+        "write_well_pages",
+        "write_manifest",
+    }
+
+
+def test_more_wells_drawn_change_pages_only(project):
+    project.setting("report", wells_drawn=5)
+    assert project.would_run() == {"write_report", "write_well_pages", "write_manifest"}
 
 
 def test_a_scenario_adds_its_own_jobs_only(project):
@@ -110,11 +128,14 @@ def test_an_edit_runs_what_imports_it_and_what_follows(project, module, expected
 
 
 def test_an_edit_of_a_data_file_runs_what_reads_it(project):
-    catalogue = project.root / "scripts" / "basinheat" / "conductivity" / "catalogue.csv"
+    catalogues = project.root / "scripts" / "basinheat" / "conductivity" / "catalogues"
+    catalogue = catalogues / "beardsmore2001.csv"
     before, stat = catalogue.read_bytes(), catalogue.stat()
     catalogue.write_bytes(before + b"\n")
     try:
-        assert project.would_run() == AFTER_CORRECTION - {"correct_temperatures"}
+        # the first look tells which rocks the catalogue knows
+        expected = (AFTER_CORRECTION - {"correct_temperatures"}) | {"look_at_inputs"}
+        assert project.would_run() == expected
     finally:
         catalogue.write_bytes(before)
         os.utime(catalogue, ns=(stat.st_atime_ns, stat.st_mtime_ns))
@@ -141,6 +162,7 @@ def test_a_changed_input_runs_all(project):
     try:
         everything = AFTER_CORRECTION | {
             "prepare_wells",
+            "look_at_inputs",
             "assign_surface_temperature",
             "define_grid",
         }

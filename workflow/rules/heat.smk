@@ -14,6 +14,7 @@ rule correct_temperatures:
         estimates="results/{run}/{scenario}/tables/estimates.parquet",
         sources="results/{run}/{scenario}/tables/correction_sources.parquet",
         rejected="results/{run}/{scenario}/tables/rejected.parquet",
+        calibration="results/{run}/{scenario}/tables/calibration.parquet",
         recovery="results/{run}/{scenario}/tables/recovery.json",
     log:
         "results/{run}/{scenario}/logs/correct_temperatures.log",
@@ -41,10 +42,12 @@ rule estimate_resistances:
         estimates="results/{run}/{scenario}/tables/estimates.parquet",
         wells="results/{run}/{scenario}/tables/wells.parquet",
         layers="results/{run}/wells/layers.parquet",
-        catalogue=lambda wildcards: SECTIONS[wildcards.scenario]["conductivity"][
-            "catalogue"
-        ]
-        or data_files("conductivity"),
+        catalogue=lambda wildcards: catalogue_file(
+            SECTIONS[wildcards.scenario]["conductivity"]["catalogue"]
+        ),
+        formations=lambda wildcards: formation_tables(
+            SECTIONS[wildcards.scenario]["conductivity"]
+        ),
     output:
         resistances="results/{run}/{scenario}/tables/resistances.parquet",
         structure="results/{run}/{scenario}/tables/map_points/conductivity.parquet",
@@ -78,6 +81,7 @@ rule fit_sources:
             "results/{run}/{scenario}/tables/conductivity_sources.parquet",
         ],
         wells="results/{run}/{scenario}/tables/wells.parquet",
+        published="results/{run}/wells/heat_flow.parquet",
         pinned=lambda wildcards: SECTIONS[wildcards.scenario]["kriging"]["variogram"][
             "pinned"
         ]
@@ -105,6 +109,9 @@ rule fit_sources:
                 wildcards.scenario
             ].surface_temperature.shared_std_k,
             "regional_mw_m2": SETTINGS[wildcards.scenario].heat_flow.regional_mw_m2,
+            "published_shared_share": SETTINGS[
+                wildcards.scenario
+            ].heat_flow.published_shared_share,
             "holdout": tuple(BASE.validation.holdout),
             "trend": SETTINGS[wildcards.scenario].kriging.drift,
         },
@@ -135,3 +142,40 @@ rule fit_gradients:
         "Gradients of the wells ({wildcards.scenario})"
     script:
         "../../scripts/fit_gradients.py"
+
+
+rule compare_corrections:
+    input:
+        readings="results/{run}/wells/readings.parquet",
+        wells="results/{run}/{scenario}/tables/wells.parquet",
+        estimates="results/{run}/{scenario}/tables/estimates.parquet",
+        temperatures="results/{run}/{scenario}/tables/temperatures.parquet",
+        resistances="results/{run}/{scenario}/tables/resistances.parquet",
+        sources="results/{run}/{scenario}/tables/sources.parquet",
+        source_covariance="results/{run}/{scenario}/tables/source_covariance.parquet",
+        variogram="results/{run}/{scenario}/variograms/heat_flow.json",
+    output:
+        comparison="results/{run}/{scenario}/tables/correction_comparison.parquet",
+        summary="results/{run}/{scenario}/tables/correction_summary.parquet",
+        anchors="results/{run}/{scenario}/tables/anchor_differences.parquet",
+        intercepts="results/{run}/{scenario}/tables/intercepts.parquet",
+        sigmas="results/{run}/{scenario}/tables/method_sigmas.parquet",
+    log:
+        "results/{run}/{scenario}/logs/compare_corrections.log",
+    conda:
+        "../../envs/environment.yaml"
+    threads: 1
+    resources:
+        mem_mb=lambda wildcards, input: 1000 + 100 * int(input.size_mb),
+        runtime=lambda wildcards, input: 10 + 5 * int(input.size_mb),
+    params:
+        correction=lambda wildcards: SECTIONS[wildcards.scenario]["correction"],
+        holdout=BASE.validation.holdout,
+        surface_shared_std_k=lambda wildcards: SETTINGS[
+            wildcards.scenario
+        ].surface_temperature.shared_std_k,
+        code=code_digest("compare_corrections.py"),
+    message:
+        "Comparing all correction methods ({wildcards.scenario})"
+    script:
+        "../../scripts/compare_corrections.py"

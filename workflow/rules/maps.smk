@@ -1,7 +1,8 @@
 # From wells to maps: the grid, kriging of heat flow and of conductivity, the columns rebuilt from
 # both, and how well all this predicts what it has not seen.
 #
-# Reads     results/{run}/{scenario}/tables/, .../variograms/heat_flow.json
+# Reads     results/{run}/wells/, results/{run}/{scenario}/tables/, .../variograms/heat_flow.json;
+#           the rasters and polygons that the config names
 # Writes    results/{run}/{scenario}/maps/, .../variograms/conductivity.json, .../tables/crossval/
 # Settings  crs, maps, kriging, gradient, conductivity, surface_temperature, validation
 
@@ -10,6 +11,7 @@ rule define_grid:
     input:
         wells="results/{run}/{scenario}/tables/wells.parquet",
         readings="results/{run}/wells/readings.parquet",
+        published="results/{run}/wells/heat_flow.parquet",
         rasters=[
             path for path in SECTIONS["base"]["inputs"]["rasters"].values() if path
         ],
@@ -52,7 +54,7 @@ rule krige_heat_flow:
         "results/{run}/{scenario}/logs/krige_heat_flow.log",
     conda:
         "../../envs/environment.yaml"
-    threads: 1
+    threads: 8
     resources:
         mem_mb=lambda wildcards, input: 2000 + 200 * int(input.size_mb),
         runtime=lambda wildcards, input: 20 + 5 * int(input.size_mb),
@@ -77,12 +79,15 @@ rule krige_conductivity:
         "results/{run}/{scenario}/logs/krige_conductivity.log",
     conda:
         "../../envs/environment.yaml"
-    threads: 1
+    threads: 8
     resources:
         mem_mb=lambda wildcards, input: 2000 + 200 * int(input.size_mb),
         runtime=lambda wildcards, input: 20 + 5 * int(input.size_mb),
     params:
-        conductivity=lambda wildcards: SECTIONS[wildcards.scenario]["conductivity"],
+        conductivity=lambda wildcards: {
+            key: SECTIONS[wildcards.scenario]["conductivity"][key]
+            for key in ("interval_m", "wells_per_interval", "below_layers")
+        },
         models=lambda wildcards: SETTINGS[
             wildcards.scenario
         ].kriging.variogram.candidates,
@@ -139,6 +144,7 @@ rule cross_validate:
     output:
         heat_flow="results/{run}/{scenario}/tables/crossval/heat_flow.parquet",
         temperature="results/{run}/{scenario}/tables/crossval/temperature.parquet",
+        columns="results/{run}/{scenario}/tables/crossval/columns.parquet",
         scores="results/{run}/{scenario}/tables/crossval/scores.json",
     log:
         "results/{run}/{scenario}/logs/cross_validate.log",
@@ -149,8 +155,11 @@ rule cross_validate:
         mem_mb=lambda wildcards, input: 2000 + 500 * int(input.size_mb),
         runtime=lambda wildcards, input: 20 + 20 * int(input.size_mb),
     params:
-        conductivity=lambda wildcards: SECTIONS[wildcards.scenario]["conductivity"],
-        maps=SECTIONS["base"]["maps"],
+        conductivity=lambda wildcards: {
+            key: SECTIONS[wildcards.scenario]["conductivity"][key]
+            for key in ("interval_m", "wells_per_interval", "below_layers")
+        },
+        maps={key: SECTIONS["base"]["maps"][key] for key in ("depths_m", "deepest_m")},
         validation=SECTIONS["base"]["validation"],
         drift=lambda wildcards: SETTINGS[wildcards.scenario].kriging.drift,
         code=code_digest("cross_validate.py"),

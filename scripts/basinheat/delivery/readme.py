@@ -60,7 +60,13 @@ def _numbered(lines: tuple[str, ...]) -> str:
 
 
 def _files(rasters: list[str], about: About) -> str:
-    entries = [("report.html", "what was done, how far the maps can be trusted, pictures")]
+    entries = [
+        ("report.html", "what was done, how far the maps can be trusted, pictures"),
+        (
+            "wells.html",
+            "the wells, the worst fits first: readings, corrections and recovery, drawn and listed",
+        ),
+    ]
     for name in rasters:
         what = quantity(name, about)
         entries.append((f"rasters/{name}.tif", f"{what.label}: {what.description}"))

@@ -35,8 +35,8 @@ class Point:
 
 def points(contents: Contents) -> list[Point]:
     """Return what needs a look, the gravest first."""
-    rules = (_few_wells, _biases, _honesty, _baselines, _scales, _extrapolated, _sources,
-             _refused, _rocks, _wells)  # fmt: skip
+    rules = (_few_wells, _biases, _intercepts, _honesty, _baselines, _scales, _extrapolated,
+             _sources, _refused, _rocks, _wells)  # fmt: skip
     return [point for rule in rules for point in rule(contents)]
 
 
@@ -73,6 +73,16 @@ def _biases(contents: Contents) -> Iterator[Point]:
             )
 
 
+def _intercepts(contents: Contents) -> Iterator[Point]:
+    final = contents.intercepts[contents.intercepts["group"].eq("final")]
+    for row in final[final["alarm"].ne("")].itertuples():
+        yield Point(
+            f"The regional line of the mud-cooled temperatures is {row.alarm}: a bias that does "
+            "not grow with depth, or rock that is wrong at shallow depth.",
+            "compared",
+        )
+
+
 def _honesty(contents: Contents) -> Iterator[Point]:
     for key, (title, _, _) in captions.SCORES.items():
         ratio = (contents.scores.get(key) or {}).get("msdr")
@@ -105,7 +115,7 @@ def _scales(contents: Contents) -> Iterator[Point]:
             yield Point(
                 f"Stated variances had to be scaled by {number(scale, 2)}: "
                 f"{captions.of_class(name)}.",
-                "temperatures",
+                "compared",
             )
 
 

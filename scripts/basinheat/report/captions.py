@@ -34,6 +34,13 @@ _SOURCES = {
     "rock:heat_production": "heat production of the rock",
 }
 
+_FLAGS = {
+    "outside_calibration_depths": "above or below every pair of the calibration: its correction is "
+    "held as it is there, its σ grows",
+    "correction_above_half_of_rise": "more was added than half of the rise above the surface "
+    "temperature: look at the reading and its time first",
+}
+
 _CLASSES = {
     "direct": "measured formation temperatures (tests, equilibrium logs)",
     "recovery:repeated": "mud-cooled, several timed readings",
@@ -69,7 +76,31 @@ def of_source(name: str) -> str:
     kind, _, detail = name.partition(":")
     if kind == "conductivity":
         return f"conductivity of {words(detail)}"
-    return of_method(detail) if kind == "method" else words(name.replace(":", ", "))
+    return _of_bias(detail) if kind == "method" else words(name.replace(":", ", "))
+
+
+def _of_bias(detail: str) -> str:
+    """Return in words what is left unsure of a method: of its level, its slope, or its fit."""
+    method, _, part = detail.rpartition("_")
+    if method == "local_calibration":
+        left = f"what its pairs leave open, part {part}"
+        missed = "slope with depth that its pairs do not tell"
+        return f"the basin's own correction: {missed if part == 'slope' else left}"
+    if method in METHODS and part == "slope":
+        return f"{of_method(method)}: slope with depth"
+    return of_method(detail)
+
+
+def of_flag(code: str) -> str:
+    """Return a flag in words, and what it means where the words alone do not say it.
+
+    Examples
+    --------
+    >>> of_flag("assumed_vertical")
+    'assumed vertical'
+    """
+    meaning = _FLAGS.get(code)
+    return f"{words(code)}: {meaning}" if meaning else words(code)
 
 
 def of_method(name: str) -> str:

@@ -17,7 +17,8 @@ class Contents:
     """Tables and records of one scenario, as loaded.
 
     ``rejected`` is the ledger of reading and screening, ``rejected_later`` that of the stages after
-    it: its rows stand in ``readings`` and ``layers`` too.
+    it: its rows stand in ``readings`` and ``layers`` too. ``first_look`` is the
+    record of the inputs.
     """
 
     about: About
@@ -28,7 +29,12 @@ class Contents:
     layers: pd.DataFrame
     rejected: pd.DataFrame
     rejected_later: pd.DataFrame
+    first_look: dict[str, Any]
     temperatures: pd.DataFrame
+    correction_summary: pd.DataFrame
+    anchor_differences: pd.DataFrame
+    intercepts: pd.DataFrame
+    method_sigmas: pd.DataFrame
     resistances: pd.DataFrame
     heat_flow: pd.DataFrame
     sources: pd.DataFrame
@@ -38,6 +44,7 @@ class Contents:
     heat_flow_model: dict[str, Any]
     structure_model: dict[str, Any]
     recovery: dict[str, Any]
+    calibration: pd.DataFrame
     rocks: Catalogue
     settings: dict[str, Any]
     versions: dict[str, str]

@@ -109,11 +109,13 @@ def by_depth_sheet(contents: Contents) -> Sheet:
 def by_method_sheet(contents: Contents) -> Sheet:
     """Score the temperature of wells left out, by correction method."""
     groups = contents.crossval_temperature.groupby("method", sort=True)
-    rows = [[captions.of_method(str(method)), *_errors(part)] for method, part in groups]
+    rows = [
+        [f"{method}: {captions.of_method(str(method))}", *_errors(part)] for method, part in groups
+    ]
     note = "A method whose bias stands out against measured formation temperatures is off, or its "
     note += "wells lie where the map is."
     return Sheet(
-        "Temperature of wells left out, by correction", ["correction", *_ERRORS], rows, note
+        "Temperature of wells left out, by correction", ["`correction", *_ERRORS], rows, note
     )
 
 

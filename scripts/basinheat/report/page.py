@@ -2,16 +2,28 @@
 
 from __future__ import annotations
 
-import os
 from pathlib import Path
 from typing import Any
 
+from basinheat import documents
 from basinheat.delivery import cautions, metadata
 from basinheat.delivery.manifest import without_folders
-from basinheat.report import attention, captions, figures, mapfigures, overview, sheet, summary
+from basinheat.firstlook import wording
+from basinheat.report import (
+    attention,
+    calibration,
+    captions,
+    comparison,
+    figures,
+    mapfigures,
+    overview,
+    residuals,
+    sheet,
+    summary,
+    template,
+)
 from basinheat.report.contents import Contents
 
-TEMPLATES = Path(__file__).parent / "templates"
 LONGEST_SETTINGS = 200_000
 
 
@@ -25,24 +37,12 @@ def write(path: str | Path, contents: Contents) -> None:
     contents : Contents
         Everything it shows.
     """
-    part = Path(f"{path}.part")
-    part.parent.mkdir(parents=True, exist_ok=True)
-    part.write_text(html(contents), encoding="utf-8", newline="\n")
-    os.replace(part, path)
+    documents.write_text(html(contents), path)
 
 
 def html(contents: Contents) -> str:
     """Return the page as text."""
-    import jinja2
-
-    environment = jinja2.Environment(
-        loader=jinja2.FileSystemLoader(TEMPLATES),
-        autoescape=True,
-        undefined=jinja2.StrictUndefined,
-        trim_blocks=True,
-        lstrip_blocks=True,
-    )
-    environment.filters["shown"] = sheet.shown
+    environment = template.environment()
     return environment.get_template("report.html.j2").render(
         about=contents.about,
         grid=contents.grid,
@@ -52,8 +52,11 @@ def html(contents: Contents) -> str:
         sigma=metadata.SIGMA,
         short_caution=cautions.SHORT,
         cautions=cautions.CAUTIONS,
-        order=[captions.of_method(name) for name in contents.about.methods],
+        order=[(name, captions.of_method(name)) for name in contents.about.methods],
         how=_how(contents.settings),
+        calibrated=calibration.found(contents),
+        calibration=calibration.introduction(contents),
+        example_order=comparison.example_order(contents),
         settings=_settings(contents.settings),
         key_figures=overview.key_figures(contents),
         attention=attention.points(contents),
@@ -68,6 +71,8 @@ def _pictures(contents: Contents) -> dict[str, Any]:
     return {
         "trust": mapfigures.trust_picture(contents),
         "corrections": figures.correction_picture(contents),
+        "residuals": residuals.residual_picture(contents),
+        "comparison": comparison.comparison_picture(contents),
         "variograms": figures.variogram_picture(contents),
         "validation": figures.validation_picture(contents),
     }
@@ -84,10 +89,16 @@ def _sheets(contents: Contents) -> dict[str, sheet.Sheet]:
         "rows": summary.rows_sheet,
         "reasons": summary.reasons_sheet,
         "flags": summary.flags_sheet,
-        "methods": summary.methods_sheet,
         "passed_over": summary.passed_over_sheet,
         "learned": summary.learned_sheet,
-        "scales": summary.scales_sheet,
+        "ladder": calibration.ladder_sheet,
+        "calibrated_by_depth": calibration.by_depth_sheet,
+        "recovered": calibration.recovery_sheet,
+        "comparison": comparison.comparison_sheet,
+        "anchors": comparison.anchors_sheet,
+        "intercepts": comparison.intercepts_sheet,
+        "sigmas": comparison.sigmas_sheet,
+        "sigma_sources": comparison.sigma_sources_sheet,
         "sources": summary.sources_sheet,
         "origins": summary.origins_sheet,
         "rocks": summary.rocks_sheet,
@@ -96,7 +107,12 @@ def _sheets(contents: Contents) -> dict[str, sheet.Sheet]:
         "baselines": summary.baselines_sheet,
     }
     sheets = {name: make(contents) for name, make in made.items()}
-    return {**sheets, "versions": summary.versions_sheet(contents.versions)}
+    return {
+        **sheets,
+        "files": wording.files_sheet(contents.first_look),
+        "questions": wording.questions_sheet(contents.first_look),
+        "versions": summary.versions_sheet(contents.versions),
+    }
 
 
 def _how(settings: dict[str, Any]) -> dict[str, Any]:
@@ -104,6 +120,11 @@ def _how(settings: dict[str, Any]) -> dict[str, Any]:
     kriging = settings["kriging"]
     return {
         "temperature_law": settings["conductivity"]["temperature_law"],
+        "laws": ", ".join(sorted(set(settings["conductivity"]["laws"].values()))),
+        "catalogue": settings["conductivity"]["catalogue"],
+        "fluid_mixing": settings["conductivity"]["fluid_mixing"].replace("_", " "),
+        "beds": settings["conductivity"]["mixing"]["beds"],
+        "pressure": settings["conductivity"]["pressure"],
         "engine": kriging["engine"],
         "drift": kriging["drift"],
         "pinned": kriging["variogram"]["pinned"],

@@ -26,7 +26,9 @@ class Sheet:
     title : str
         Above it.
     headers : list of str
-        One a column; a column whose header starts with ``#`` holds numbers and is set right.
+        One a column; a column whose header starts with ``#`` holds numbers and is set right; where
+        it starts with a grave accent, cells hold a name as the config has it, and ``: `` before
+        what is said of it.
     rows : list of list of str
         Text, as printed.
     note : str
@@ -41,10 +43,8 @@ class Sheet:
     @property
     def columns(self) -> list[tuple[str, str]]:
         """Return (header, CSS class) of the columns."""
-        return [
-            (name.removeprefix("#"), "number" if name.startswith("#") else "")
-            for name in self.headers
-        ]
+        kinds = {"#": "number", "`": "code"}
+        return [(name.lstrip("#`"), kinds.get(name[:1], "")) for name in self.headers]
 
 
 def shown(text: Any, longest: int = LONGEST) -> str:

@@ -7,10 +7,48 @@ from typing import Any
 import numpy as np
 import pandas as pd
 
-from basinheat.corrections.registry import METHODS
 from basinheat.report import captions
 from basinheat.report.contents import Contents
 from basinheat.report.sheet import Sheet, number, percent, words
+
+# A depth that stands for none: the trend of these readings has no depth below which it is straight.
+_WITHOUT_LIMIT = 1e5
+# What is told of what the corrections learned: words, digits, with a sign or not, unit.
+_LEARNED = {
+    "raw_trend/surface_gradient_k_km": ("rise of raw readings, at the surface", 1, False, "K/km"),
+    "raw_trend/bend_k_km2": ("its change with depth", 1, True, "K/km per km"),
+    "raw_trend/straight_below_m": ("straight below", 0, False, "m"),
+    "conductive_recovery/expected_gradient_k_km": (
+        "gradient expected at the sets, median", 1, False, "K/km",
+    ),
+    "conductive_recovery/law/offset_k": (
+        "cooling of the hole while mud circulates: fixed part", 1, True, "K",
+    ),
+    "conductive_recovery/law/slope": (
+        "its part in proportion to the rock's rise above the surface", 2, False, "K per K",
+    ),
+    "conductive_recovery/law/scatter": (
+        "its scatter from set to set, for a usual rise", 2, False, "K per K",
+    ),
+    "conductive_recovery/law_level_std_ln": (
+        "σ of the expected cooling, as a share of it", 2, False, "1",
+    ),
+    "conductive_recovery/law/noise": ("errors of readings, in their stated σ", 1, False, "1"),
+    "conductive_recovery/sets_that_taught": (
+        "sets of repeated readings that taught this", 0, False, "sets",
+    ),
+    "conductive_recovery/sets_contradicting": (
+        "sets left out, their readings contradict each other", 0, False, "sets",
+    ),
+    "conductive_recovery/sets_with_all_times": ("sets with all times noted", 0, False, "sets"),
+    "conductive_recovery/circulation_times_noted": (
+        "times of circulation noted", 0, False, "times",
+    ),
+    "conductive_recovery/circulation_median_h": ("usual time of circulation", 1, False, "h"),
+    "conductive_recovery/circulation_factor": (
+        "its spread, one σ up or down: a factor of", 1, False, "1",
+    ),
+}  # fmt: skip
 
 
 def rows_sheet(contents: Contents) -> Sheet:
@@ -47,30 +85,8 @@ def flags_sheet(contents: Contents) -> Sheet:
     rows = []
     for name in ("wells", "readings", "temperatures"):
         counts = _counted(getattr(contents, name)["flags"])
-        rows += [[name, words(code), number(count)] for code, count in counts.items()]
+        rows += [[name, captions.of_flag(code), number(count)] for code, count in counts.items()]
     return Sheet("Kept, but assumed or doubted", ["table", "flag", "#rows"], rows)
-
-
-def methods_sheet(contents: Contents) -> Sheet:
-    """List the correction methods that were used, with their size and source."""
-    rows = []
-    for name, part in contents.temperatures.groupby("method", sort=True):
-        reference = METHODS[str(name)].reference
-        own = np.hypot(part["temperature_std_k"], part["well_std_k"])
-        rows.append(
-            [
-                captions.of_method(str(name)),
-                number(len(part)),
-                number(part["correction_k"].median(), 1, sign=True),
-                number(own.median(), 1),
-                number(part["shared_std_k"].median(), 1),
-                f"{reference.author} ({reference.year}), {reference.title}. "
-                f"Numbers: {reference.status}",
-            ]
-        )
-    headers = ["method", "#temperatures", "#median correction (K)", "#median own σ (K)",
-               "#median shared σ (K)", "source, and how its numbers came here"]  # fmt: skip
-    return Sheet("Corrections used", headers, rows)
 
 
 def passed_over_sheet(contents: Contents) -> Sheet:
@@ -79,28 +95,21 @@ def passed_over_sheet(contents: Contents) -> Sheet:
     rows = []
     for reason, count in counts.items():
         method, _, why = reason.partition(": ")
-        rows.append([captions.of_method(method), why, number(count)])
-    headers = ["method", "not used, because it", "#temperatures"]
+        rows.append([f"{method}: {captions.of_method(method)}", why, number(count)])
+    headers = ["`method", "not used, because it", "#temperatures"]
     return Sheet("Why an earlier method was passed over", headers, rows)
 
 
 def learned_sheet(contents: Contents) -> Sheet:
-    """List what the corrections learned from these wells."""
-    rows = [[" / ".join(words(part) for part in path), value] for path, value in
-            _flat(contents.recovery)]  # fmt: skip
-    return Sheet("What the corrections learned from these wells", ["quantity", "#value"], rows)
-
-
-def scales_sheet(contents: Contents) -> Sheet:
-    """List by how much stated variances had to be scaled."""
-    counts = contents.temperatures["variance_class"].value_counts()
+    """List what the corrections learned from these wells; calibration has a part of its own."""
+    found = dict(_flat(contents.recovery))
     rows = [
-        [captions.of_class(name), number(counts.get(name, 0)), number(scale, 2)]
-        for name, scale in contents.heat_flow_model["variance_scales"].items()
+        [text, number(found[path], digits, sign=sign), unit]
+        for path, (text, digits, sign, unit) in _LEARNED.items()
+        if path in found and abs(found[path]) < _WITHOUT_LIMIT
     ]
-    note = "1: their scatter among neighbours is as their σ says. Already in every σ of this page."
-    headers = ["readings", "#temperatures", "#scale"]
-    return Sheet("Scale on the stated variance", headers, rows, note)
+    headers = ["quantity", "#value", "unit"]
+    return Sheet("What the corrections learned from these wells", headers, rows)
 
 
 def sources_sheet(contents: Contents) -> Sheet:
@@ -222,13 +231,12 @@ def _model(name: str, unit: str, covariance: dict[str, Any], digits: int) -> lis
     return [name, str(covariance["model"]), sill, nugget, unit, number(covariance["range_m"] / 1e3)]
 
 
-def _flat(record: dict[str, Any], path: tuple[str, ...] = ()) -> list[tuple[tuple[str, ...], str]]:
+def _flat(record: dict[str, Any], path: str = "") -> list[tuple[str, float]]:
     """Return the numbers of a nested record with the names that lead to each."""
     found = []
     for key, value in record.items():
-        here = (*path, str(key))
         if isinstance(value, dict):
-            found += _flat(value, here)
-        else:
-            found.append((here, f"{value:.4g}" if isinstance(value, float) else str(value)))
+            found += _flat(value, f"{path}{key}/")
+        elif isinstance(value, int | float):
+            found.append((f"{path}{key}", float(value)))
     return found

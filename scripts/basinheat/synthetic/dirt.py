@@ -104,8 +104,8 @@ def _spoil_cells(archive: _Archive) -> None:
     edits: list[tuple[str, str, float, Edit, str]] = [
         ("celsius_in_fahrenheit_column", "BHT_F", 8500.0, _in_celsius, "noticed"),
         ("metres_in_feet_column", "DEPTH_FT", 8500.0, _in_metres, "noticed"),
-        ("text_in_number", "BHT_F", 0.0, lambda _: "nil", "rejected"),
-        ("text_in_number", "BHT_F", 0.0, lambda row: f"~{row.BHT_F}", "rejected"),
+        ("missing_word", "BHT_F", 0.0, lambda _: "nil", "rejected"),
+        ("approximate_number", "BHT_F", 0.0, lambda row: f"~{row.BHT_F}", "noticed"),
         ("negative_depth", "DEPTH_FT", 0.0, lambda row: f"-{row.DEPTH_FT}", "rejected"),
         ("below_surface_temperature", "BHT_F", 4000.0, lambda _: "36", "rejected"),
         ("blank_temperature", "BHT_F", 0.0, lambda _: "", "rejected"),
@@ -141,7 +141,7 @@ def _spoil_sets(archive: _Archive) -> None:
         ("TSC_H", "0", "zero_time"),
         ("TSC_H", "0.0", "zero_time"),
         ("CIRC_H", "0", "zero_time"),
-        ("TSC_H", "nil", "text_in_time"),
+        ("TSC_H", "nil", "missing_word_in_time"),
         ("TSC_H", "", "blank_time"),
     ):
         row = archive.pick("readings", timed)
