@@ -120,7 +120,7 @@ ERRORS = {
     ),
     "a delimiter that must be stated": (
         {"wells": GOOD_WELLS.replace(",", "^")},
-        ["inputs.wells[0].columns: well is missing", "wells.csv has the headers", "well^x^y"],
+        ["inputs.wells[0].skip_lines:", "wells.csv", "well^x^y", "delimiter"],
     ),
     "a web page": (
         {"wells": HTML}, ["inputs.wells[0].file:", "wells.csv: is a web page", "as CSV"],
