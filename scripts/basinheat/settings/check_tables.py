@@ -205,9 +205,9 @@ def _of_file(path: str, kind: str, table: TableFile, file: str, present: list[st
     wanted = [*needed.values(), *table.columns.values(), *table.more_headers]
     if not any(clean(header) in present for header in wanted) and _prose(table, places, present):
         return [
-            f"{path}.skip_lines: {file} has none of the headers in its first lines, the first being "
-            f'"{present[0][:40]}"; state how many lines stand before them, or the `delimiter` that '
-            "parts them"
+            f"{path}.skip_lines: {file} has none of the headers in its first lines, of which one "
+            f'is "{present[0][:40]}"; state how many lines stand before them, or the `delimiter` '
+            "that parts them"
         ]
     stated = {f"columns.{name}": header for name, header in table.columns.items()}
     stated |= {f"unit_columns.{name}": header for name, header in table.unit_columns.items()}
