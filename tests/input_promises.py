@@ -79,7 +79,7 @@ def _readable(error):
     assert error.faults
     for fault in error.faults:
         assert not LINES.search(fault), f"more than a line: {fault!r}"
-        assert re.match(r"\S*[\w\]\"'>)]+.*", fault), f"says nothing: {fault!r}"
+        assert re.search(r"\w", fault), f"says nothing: {fault!r}"
         placed = re.search(r"^[^:]*\S: \S", fault) or re.search(r"[\w.]+\.(csv|json)", fault)
         assert placed or "no well is left" in fault, f"names no place: {fault!r}"
         assert not any(word in fault for word in DISTRESS), f"a program's distress: {fault!r}"
