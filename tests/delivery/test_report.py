@@ -7,11 +7,11 @@ import re
 import struct
 import subprocess
 import sys
-from html.parser import HTMLParser
 
 import made_up_report
 import pytest
 import yaml
+from page_reader import Page
 
 from basinheat.delivery.cautions import CAUTIONS
 from basinheat.report import page
@@ -29,32 +29,6 @@ HOSTILE = (
     "بئر ٧",
     "x" * 10_000,
 )
-VOID = {"meta", "img", "br", "link", "input", "hr"}
-
-
-class Page(HTMLParser):
-    """Tags, attributes and text of a page; closing tags must match."""
-
-    def __init__(self, text):
-        super().__init__()
-        self.tags, self.open, self.text = [], [], []
-        self.feed(text)
-        assert self.open == []
-
-    def handle_starttag(self, tag, attrs):
-        self.tags.append((tag, dict(attrs)))
-        if tag not in VOID:
-            self.open.append(tag)
-
-    def handle_endtag(self, tag):
-        assert self.open.pop() == tag
-
-    def handle_data(self, data):
-        self.text.append(data)
-
-    def all(self, name):
-        """Return the attributes of all tags of a name."""
-        return [attrs for tag, attrs in self.tags if tag == name]
 
 
 @pytest.fixture(scope="module")
@@ -86,14 +60,14 @@ def read(text):
 
 def test_nothing_comes_from_outside(text, read):
     """No script, no link but to anchors and the page beside, no address; the page forbids it."""
-    names = {tag for tag, _ in read.tags}
+    names = {tag for tag, _, _ in read.tags}
     assert not names & {"script", "link", "iframe", "object", "embed", "form", "base", "svg"}
     assert all(attrs["src"].startswith("data:image/png;base64,") for attrs in read.all("img"))
     links = {attrs["href"] for attrs in read.all("a")}
     assert {link for link in links if not link.startswith("#")} == {"wells.html"}
     style = re.search(r"<style>(.*?)</style>", text, re.S).group(1)
     assert not re.search(r"url\(|@import|http", style)
-    assert not [name for _, attrs in read.tags for name in attrs if name.startswith("on")]
+    assert not [name for _, attrs, _ in read.tags for name in attrs if name.startswith("on")]
     policy = [attrs for attrs in read.all("meta") if "http-equiv" in attrs]
     assert policy[0]["content"].startswith("default-src 'none'")
     assert "http://" not in text
@@ -102,7 +76,7 @@ def test_nothing_comes_from_outside(text, read):
 
 def test_every_link_has_its_place(read):
     """Anchors exist, and each id stands once."""
-    ids = [attrs["id"] for _, attrs in read.tags if "id" in attrs]
+    ids = [attrs["id"] for _, attrs, _ in read.tags if "id" in attrs]
     assert len(ids) == len({*ids})
     links = [attrs["href"] for attrs in read.all("a")]
     assert {link.removeprefix("#") for link in links if link.startswith("#")} <= {*ids}

@@ -8,10 +8,10 @@ import re
 import shutil
 import subprocess
 import sys
-from html.parser import HTMLParser
 
 import made_up_wells
 import pytest
+from page_reader import Page
 
 from basinheat.report.sheet import LONGEST
 from basinheat.wellpages import page
@@ -28,35 +28,6 @@ HOSTILE = (
     "بئر ٧",
     "x" * 10_000,
 )
-VOID = {"meta", "img", "br", "link", "input", "hr"}
-
-
-class Page(HTMLParser):
-    """Tags, attributes and text of a page; closing tags must match."""
-
-    def __init__(self, text):
-        super().__init__()
-        self.tags, self.open, self.text = [], [], []
-        self.feed(text)
-        assert self.open == []
-
-    def handle_starttag(self, tag, attrs):
-        self.tags.append((tag, dict(attrs), tuple(self.open)))
-        if tag not in VOID:
-            self.open.append(tag)
-
-    def handle_startendtag(self, tag, attrs):
-        self.tags.append((tag, dict(attrs), tuple(self.open)))
-
-    def handle_endtag(self, tag):
-        assert self.open.pop() == tag
-
-    def handle_data(self, data):
-        self.text.append(data)
-
-    def all(self, name):
-        """Return the attributes of all tags of a name."""
-        return [attrs for tag, attrs, _ in self.tags if tag == name]
 
 
 @pytest.fixture(scope="module")

@@ -13,6 +13,7 @@ from hypothesis import strategies as st
 
 from basinheat import tables
 from basinheat.conductivity import catalogue
+from basinheat.corrections.methods.horner import horner_time
 from basinheat.corrections.recovery.response import Mud
 from basinheat.wellpages import rocks, sheets
 from basinheat.wellpages.cooling import (
@@ -20,7 +21,6 @@ from basinheat.wellpages.cooling import (
     curves,
     fit_cooling,
     horner_lines,
-    horner_time,
 )
 from basinheat.wellpages.depthplot import Drawn, depth_plot
 from basinheat.wellpages.fits import fit_sets, members

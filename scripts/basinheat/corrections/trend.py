@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
@@ -48,10 +48,6 @@ class RegionalTrend:
         inside = np.minimum(depth_m, self.deepest_m)
         curve = self.slope_k_m * inside + self.bend_k_m2 * inside**2
         return curve + self.gradient_k_m(depth_m) * (depth_m - inside)
-
-    def scaled(self, factor: float) -> RegionalTrend:
-        """Return the trend times a factor."""
-        return replace(self, slope_k_m=self.slope_k_m * factor, bend_k_m2=self.bend_k_m2 * factor)
 
 
 def fit_trend(depth_m: Floats, rise_k: Floats) -> RegionalTrend:

@@ -32,11 +32,6 @@ class Points:
     std: Floats
     shared_share: Floats
 
-    @classmethod
-    def none(cls) -> Points:
-        """Return no points."""
-        return cls(np.zeros((0, 2)), np.zeros(0), np.zeros(0), np.zeros(0))
-
     def take(self, rows: NDArray[np.int64]) -> Points:
         """Return some of the points."""
         return replace(self, xy=self.xy[rows], heat_flow=self.heat_flow[rows], std=self.std[rows])

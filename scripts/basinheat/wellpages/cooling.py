@@ -7,6 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from basinheat.corrections.methods.horner import horner_time
 from basinheat.corrections.methods.time_lines import fit_line
 from basinheat.corrections.recovery.response import Mud, response
 
@@ -87,17 +88,6 @@ def curves(
     """Return the recovery curve of each set at times, (s, p) h; (s, p) in degC."""
     left = _left(sets, since_h, mud, diffusivity_m2_s)
     return sets.formation_degc[:, None] - cooled.cooling_k[:, None] * left
-
-
-def horner_time(circulation_h: Floats, since_h: Floats) -> Floats:
-    """Return ``ln((tc + Δt) / Δt)``, 0 after endless rest (Horner 1951); arrays broadcast.
-
-    Examples
-    --------
-    >>> round(float(horner_time(5.0, 5.0)), 4)
-    0.6931
-    """
-    return np.log1p(np.asarray(circulation_h) / np.asarray(since_h))
 
 
 def horner_lines(sets: TimedSets) -> tuple[Floats, Floats]:

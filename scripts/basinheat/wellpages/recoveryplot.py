@@ -6,9 +6,10 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from basinheat.corrections.methods.horner import horner_time
 from basinheat.corrections.recovery.sources import MUD
 from basinheat.wellpages.contents import Contents
-from basinheat.wellpages.cooling import curves, horner_lines, horner_time
+from basinheat.wellpages.cooling import curves, horner_lines
 from basinheat.wellpages.depthplot import Tick, points, px
 from basinheat.wellpages.fits import Fits
 from basinheat.wellpages.scale import Floats, Scale, limits
